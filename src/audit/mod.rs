@@ -1,0 +1,1 @@
+//! An independent second look at a table.

@@ -1,0 +1,1 @@
+//! Plan → findings: one file a kind of limit.

@@ -1,0 +1,1 @@
+//! Integer fixed point inside a move.

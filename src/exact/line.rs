@@ -1,0 +1,1 @@
+//! Exact straight lines over ticks, floored at every tick without division.

@@ -1,0 +1,1 @@
+//! The fixed-point sine and cosine.

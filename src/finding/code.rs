@@ -1,0 +1,85 @@
+//! The stable codes of findings; each has a page of its own in `pages/`.
+
+use super::Severity;
+
+macro_rules! codes {
+    ($($(#[$doc:meta])* $name:ident, $text:literal, $severity:ident;)*) => {
+        /// The stable code of a finding, written `area/what`.
+        #[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord, Hash)]
+        pub enum Code {
+            $($(#[$doc])* $name,)*
+        }
+
+        impl Code {
+            /// Every code there is.
+            pub const ALL: &'static [Code] = &[$(Code::$name),*];
+
+            /// `area/what`.
+            #[must_use]
+            pub fn text(self) -> &'static str {
+                match self { $(Code::$name => $text,)* }
+            }
+            /// The severity it usually has.
+            #[must_use]
+            pub fn severity(self) -> Severity {
+                match self { $(Code::$name => Severity::$severity,)* }
+            }
+            /// The page that explains it, in Markdown.
+            #[must_use]
+            pub fn page(self) -> &'static str {
+                match self { $(Code::$name => include_str!(concat!("pages/", $text, ".md")),)* }
+            }
+        }
+    };
+}
+
+codes! {
+    /// A statement that does not read.
+    TextSyntax, "text/syntax", Error;
+    /// A missing unit, or one of the wrong kind.
+    TextUnit, "text/unit", Error;
+    /// A number that is out of range or cannot be.
+    TextNumber, "text/number", Error;
+    /// Something given twice.
+    TextDuplicate, "text/duplicate", Error;
+    /// Something required that is not there.
+    TextMissing, "text/missing", Error;
+    /// A name that is already something else.
+    TextNameTaken, "text/name-taken", Error;
+    /// Parts or figures that lead back to themselves.
+    TextCircular, "text/circular", Error;
+    /// An input past the limits of the program.
+    TextTooMuch, "text/too-much", Error;
+    /// A file that cannot be read.
+    TextFile, "text/file", Error;
+    /// A figure nobody defined.
+    TextUnknownFigure, "text/unknown-figure", Error;
+    /// A part nobody defined.
+    TextUnknownPart, "text/unknown-part", Error;
+    /// A rotor that is not there.
+    TextUnknownRotor, "text/unknown-rotor", Error;
+    /// A motor would have to turn too fast.
+    LimitSpeed, "limit/speed", Error;
+    /// A motor would have to change its speed too fast.
+    LimitAcceleration, "limit/acceleration", Error;
+    /// A motor's acceleration would have to change too fast.
+    LimitJerk, "limit/jerk", Error;
+    /// A motor holds a speed at which it does not run evenly.
+    StallHold, "stall/hold", Error;
+    /// A motor passes through speeds at which it does not run evenly.
+    StallCrossing, "stall/crossing", Warning;
+    /// A one-way motor would turn the other way.
+    TurnDirection, "turn/direction", Error;
+    /// The figure repeats so slowly that it flickers.
+    FlickerRepeat, "flicker/repeat", Warning;
+    /// The pose of a figure is not known.
+    PoseOpen, "pose/open", Note;
+    /// The loop's morph is too short to close the loop.
+    LoopSeam, "loop/seam", Error;
+    /// A boundary was moved to the nearest tick.
+    TimeRounded, "time/rounded", Note;
+    /// `hold until` a time that is past.
+    TimePast, "time/past", Error;
+    /// A morph or hold shorter than half a tick.
+    TimeShort, "time/short", Error;
+}

@@ -1,0 +1,1 @@
+//! Text → syntax tree → resolved rig and show.

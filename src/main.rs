@@ -1,0 +1,3 @@
+//! Parse arguments, run one command, render findings, set the exit code.
+
+fn main() {}

@@ -1,0 +1,1 @@
+//! Plan → rows, and the forms they are written in.
