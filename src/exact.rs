@@ -8,6 +8,7 @@
 
 pub mod fixed;
 pub mod line;
+pub mod root;
 pub mod sine;
 
 use num_bigint::BigInt;

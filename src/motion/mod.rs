@@ -1,6 +1,10 @@
 //! Laws of motion, and the move: one rotor from one exact state to another.
 
-use crate::exact::{Rational, Seconds, Speed, Ticks, Turns};
+mod bezier;
+pub mod inside;
+mod laws;
+
+use crate::exact::{Rational, Seconds, Speed, Ticks, Turns, ratio};
 
 /// How a speed goes over from 0 to 1, as written.
 #[derive(Clone, Debug, PartialEq, Eq, Hash)]
@@ -108,9 +112,18 @@ impl Move {
 }
 
 impl Shape {
-    /// S(1) = ∫₀¹ s, see the law's own definition; ½ for every symmetric law.
+    /// S(1) = ∫₀¹ s: ½ for every symmetric law; 1 − λ − 4H(1−2λ) with H = ∫₀^½ s₀ for one with a skew λ; its exact integral
+    /// for a Bézier.
+    ///
+    /// Where H is irrational (`harmonic`, `cycloidal`, `modified-sine`, `modified-trapezoid`) it is the multiple of 2⁻¹⁶⁰
+    /// nearest to it, from the constant for π; [`inside::Inside`] counts with the same number.
     #[must_use]
     pub fn integral(&self) -> Rational {
-        crate::exact::ratio(1, 2)
+        if let Self::Law(law) = self
+            && let Some(curve) = bezier::Bezier::of(&law.kind)
+        {
+            return curve.gain();
+        }
+        laws::Symmetric::of(self).map_or_else(|| ratio(1, 2), |law| law.gain())
     }
 }
