@@ -1,9 +1,10 @@
 //! One rotor in one leg: exact or fixed-point phase and speed at every tick, rounded to what a row holds.
 
+use crate::exact::fixed::PHASE_BITS;
 use crate::exact::line::{Line, Ring};
 use crate::exact::{Rational, Seconds, ratio, round_half_up, whole};
-use crate::exact::fixed::PHASE_BITS;
-use crate::motion::{Inside, Move, Shape};
+use crate::motion::inside::Inside;
+use crate::motion::{Move, Shape};
 use num_integer::Integer;
 use num_traits::{ToPrimitive, Zero};
 

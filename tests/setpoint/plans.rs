@@ -12,14 +12,14 @@ use phasewright::show::{Cue, Ending, Hold, Land, Length, Pace, Show, Transition,
 use std::sync::Arc;
 
 /// A plan in the making.
-pub struct Maker {
+pub(crate) struct Maker {
     rig: Rig,
     show: Show,
     plan: Plan,
 }
 
 /// A law without skew.
-pub fn law(kind: LawKind) -> Law {
+pub(crate) fn law(kind: LawKind) -> Law {
     Law {
         kind,
         skew: ratio(1, 2),
@@ -36,7 +36,7 @@ fn transition(law: Law) -> Transition {
 }
 
 /// A rotor with the given gear, sense and counts, and generous limits.
-pub fn rotor(gear: (u32, u32), sense: i32, counts: u32) -> Rotor {
+pub(crate) fn rotor(gear: (u32, u32), sense: i32, counts: u32) -> Rotor {
     Rotor {
         place: Place::default(),
         mirror: None,
@@ -62,7 +62,7 @@ pub fn rotor(gear: (u32, u32), sense: i32, counts: u32) -> Rotor {
 }
 
 /// A rig with this tick and latency, in seconds.
-pub fn rig(tick: Rational, latency: Rational, a: Rotor, b: Rotor) -> Rig {
+pub(crate) fn rig(tick: Rational, latency: Rational, a: Rotor, b: Rotor) -> Rig {
     Rig {
         title: Some("Bench of \"two\" rotors".to_owned()),
         sha256: "ab".repeat(32),
@@ -83,7 +83,7 @@ pub fn rig(tick: Rational, latency: Rational, a: Rotor, b: Rotor) -> Rig {
 
 impl Maker {
     /// A show on `rig` that starts with a run-up by `law`.
-    pub fn new(rig: Rig, law: Law) -> Self {
+    pub(crate) fn new(rig: Rig, law: Law) -> Self {
         let show = Show {
             title: Some("Ünter the pier".to_owned()),
             sha256: "0c".repeat(32),
@@ -107,7 +107,7 @@ impl Maker {
     }
 
     /// A written cue p:q repeating `repeat` times a second, morphed to by `law`; its index.
-    pub fn cue(&mut self, p: i64, q: i64, repeat: Rational, law: Law) -> u32 {
+    pub(crate) fn cue(&mut self, p: i64, q: i64, repeat: Rational, law: Law) -> u32 {
         let figure = Figure {
             written: format!("{p}:{q}"),
             form: Form::Ratio,
@@ -143,7 +143,7 @@ impl Maker {
     }
 
     /// Adds a leg; its landing is the grid point nearest to where half the change of speed leads, a bit further on.
-    pub fn leg(&mut self, kind: LegKind, cue: u32, written: u32, ticks: u64, beam: u8) {
+    pub(crate) fn leg(&mut self, kind: LegKind, cue: u32, written: u32, ticks: u64, beam: u8) {
         let index = self.plan.legs.len();
         let start = self.plan.total();
         self.plan.legs.push(Leg {
@@ -181,7 +181,7 @@ impl Maker {
     }
 
     /// The looped plan, closed by a morph of this length into the hold at leg 1.
-    pub fn looped(mut self, cue: u32, ticks: u64, law: Law) -> Plan {
+    pub(crate) fn looped(mut self, cue: u32, ticks: u64, law: Law) -> Plan {
         let first = self.plan.legs[1];
         let (first, at_start) = (first.written, self.plan.legs[0].landing);
         self.leg(LegKind::LoopMorph, cue, first, ticks, 0);
@@ -204,7 +204,7 @@ impl Maker {
     }
 
     /// The plan with a run-down of this length to the marks.
-    pub fn run_down(mut self, cue: u32, ticks: u64, law: Law) -> Plan {
+    pub(crate) fn run_down(mut self, cue: u32, ticks: u64, law: Law) -> Plan {
         let last = self.plan.legs.last().unwrap().written;
         let index = self.plan.legs.len();
         self.leg(LegKind::RunDown, cue, last, ticks, 0);
@@ -222,7 +222,7 @@ impl Maker {
 }
 
 /// A looped show of three cues on a geared pair, 2 ms tick, one tick of latency; laws as given.
-pub fn evening(laws: [LawKind; 4]) -> Plan {
+pub(crate) fn evening(laws: [LawKind; 4]) -> Plan {
     let [up, second, third, back] = laws.map(law);
     let a = rotor((2, 1), 1, 4096);
     let b = rotor((3, 2), -1, 1000);
@@ -240,7 +240,7 @@ pub fn evening(laws: [LawKind; 4]) -> Plan {
 }
 
 /// A show of one cue that ends at rest, 1/1024 s tick, equal motors, no gear.
-pub fn there_and_back(up: LawKind, down: LawKind) -> Plan {
+pub(crate) fn there_and_back(up: LawKind, down: LawKind) -> Plan {
     let a = rotor((1, 1), 1, 4096);
     let b = rotor((1, 1), -1, 16_777_216);
     let mut show = Maker::new(rig(ratio(1, 1024), ratio(3, 1000), a, b), law(up));
