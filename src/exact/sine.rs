@@ -117,12 +117,7 @@ pub fn cosine(turns: Unit) -> Unit {
 /// Within one unit in the last place of the true value; NaN for an infinite or undefined angle.
 #[must_use]
 pub fn sine_f64(turns: f64) -> f64 {
-    // Below 2⁻³⁰ turn sin x = x up to a share (2π·2⁻³⁰)²/6 < 2⁻⁵⁷, and steps of 2⁻¹²⁰ would begin to show.
-    const TINY: f64 = 1.0 / 1_073_741_824.0;
-    if turns.abs() < TINY {
-        return std::f64::consts::TAU * turns;
-    }
-    angle(turns).map_or(f64::NAN, |angle| sine(angle).to_f64())
+    sine_and_cosine_f64(turns).0
 }
 
 /// The cosine of an angle in turns, the same on every machine: for checks that decide an output.
@@ -130,7 +125,24 @@ pub fn sine_f64(turns: f64) -> f64 {
 /// Within one unit in the last place of the true value; NaN for an infinite or undefined angle.
 #[must_use]
 pub fn cosine_f64(turns: f64) -> f64 {
-    angle(turns).map_or(f64::NAN, |angle| cosine(angle).to_f64())
+    sine_and_cosine_f64(turns).1
+}
+
+/// Both at once, see [`sine_f64`] and [`cosine_f64`].
+#[must_use]
+pub fn sine_and_cosine_f64(turns: f64) -> (f64, f64) {
+    // Below 2⁻³⁰ turn sin x = x up to a share (2π·2⁻³⁰)²/6 < 2⁻⁵⁷, and steps of 2⁻¹²⁰ would begin to show.
+    const TINY: f64 = 1.0 / 1_073_741_824.0;
+    let Some(angle) = angle(turns) else {
+        return (f64::NAN, f64::NAN);
+    };
+    let (sine, cosine) = sine_and_cosine(angle);
+    let sine = if turns.abs() < TINY {
+        std::f64::consts::TAU * turns
+    } else {
+        sine.to_f64()
+    };
+    (sine, cosine.to_f64())
 }
 
 /// The angle without its whole turns, exact but for bits below 2⁻¹²⁰; `None` where it is not finite.

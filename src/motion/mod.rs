@@ -1,8 +1,10 @@
 //! Laws of motion, and the move: one rotor from one exact state to another.
 
 mod bezier;
+pub mod derivatives;
 pub mod inside;
 mod laws;
+pub mod real;
 
 use crate::exact::{Rational, Seconds, Speed, Ticks, Turns, ratio};
 
