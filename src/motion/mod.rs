@@ -4,6 +4,7 @@ mod bezier;
 pub mod derivatives;
 pub mod inside;
 mod laws;
+pub mod profile;
 pub mod real;
 
 use crate::exact::{Rational, Seconds, Speed, Ticks, Turns, ratio};
@@ -40,6 +41,25 @@ pub enum LawKind {
         /// Second control point, up.
         y2: Rational,
     },
+}
+
+impl LawKind {
+    /// The word a script uses.
+    #[must_use]
+    pub fn word(&self) -> &'static str {
+        match self {
+            LawKind::Linear => "linear",
+            LawKind::Cubic => "cubic",
+            LawKind::Quintic => "quintic",
+            LawKind::Septic => "septic",
+            LawKind::Harmonic => "harmonic",
+            LawKind::Cycloidal => "cycloidal",
+            LawKind::ModifiedSine => "modified-sine",
+            LawKind::ModifiedTrapezoid => "modified-trapezoid",
+            LawKind::Scurve => "scurve",
+            LawKind::Bezier { .. } => "bezier",
+        }
+    }
 }
 
 /// A law with its skew.

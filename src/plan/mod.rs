@@ -3,10 +3,19 @@
 //! A plan keeps only what cannot be derived (where each hold begins, how long each leg takes), about a hundred
 //! bytes a leg, so that a million cues fit easily; [`Plan::moves`] makes the exact moves of a leg on demand.
 
+pub mod build;
+pub mod landing;
+pub mod passage;
+pub mod schedule;
+mod speeds;
+
+pub use speeds::CueSpeeds;
+
 use crate::exact::{GridPhase, Seconds, Speed, Ticks, Turns};
-use crate::motion::{Move, Shape};
+use crate::motion::{LawKind, Move, Shape};
 use crate::rig::{Pair, Rig, RotorId};
 use crate::show::{Cue, Ending, Show, Transition, WrittenCue};
+use passage::{Aim, Passage};
 use std::sync::Arc;
 
 /// What a stretch of time is.
@@ -40,22 +49,9 @@ pub struct Leg {
     pub ticks: Ticks,
     /// Laser level, 0 to 255, before the latency is taken off.
     pub beam: u8,
-    /// Unwrapped mirror phases at its end, on the grid; meaningful for every kind but `Hold` (ends off the grid)
-    /// and `RunDown` (see [`Plan::rest`]).
+    /// Unwrapped mirror phases on the grid: of a hold at its start, of a transition at its end;
+    /// of no meaning in a run-down, which may end off the grid, see [`Plan::rest`].
     pub landing: Pair<GridPhase>,
-}
-
-/// The speeds of a written cue, all before and after spin.
-#[derive(Clone, Debug, PartialEq, Eq)]
-pub struct CueSpeeds {
-    /// f: how often the whole figure repeats, before spin, always above zero.
-    pub repeat: Speed,
-    /// Mirror speeds with spin, counter-clockwise positive.
-    pub mirror: Pair<Speed>,
-    /// Motor speeds with spin.
-    pub motor: Pair<Speed>,
-    /// The wanted Φ* in [0, 1) at the first row of the hold, on the grid; `None` where the pose is free.
-    pub pose: Option<Turns>,
 }
 
 /// The exact motion of a whole show.
@@ -123,10 +119,16 @@ impl Plan {
     /// The transition that a leg follows; `None` for a hold.
     #[must_use]
     pub fn transition(&self, leg: &Leg) -> Option<&Transition> {
-        match leg.kind {
+        self.transition_for(leg.kind, leg.written)
+    }
+    pub(crate) fn transition_for(&self, kind: LegKind, written: u32) -> Option<&Transition> {
+        match kind {
             LegKind::Hold => None,
             LegKind::RunUp => Some(&self.show.run_up),
-            LegKind::Morph => self.cue(leg).map(|cue| &cue.morph),
+            LegKind::Morph => match self.show.cues.get(written as usize) {
+                Some(WrittenCue::Good(cue)) => Some(&cue.morph),
+                _ => None,
+            },
             LegKind::LoopMorph => match &self.show.ending {
                 Some(Ending::Loop { morph, .. }) => Some(morph),
                 _ => None,
@@ -140,10 +142,14 @@ impl Plan {
     /// Motor speed at the start of a leg: the speed that the leg before ends with.
     #[must_use]
     pub fn speed_before(&self, index: usize, rotor: RotorId) -> Speed {
-        index
-            .checked_sub(1)
-            .and_then(|before| self.legs.get(before))
-            .map_or_else(Speed::zero, |leg| self.speed_after(leg, rotor))
+        match (index.checked_sub(1), self.legs.get(index)) {
+            (_, Some(leg)) if leg.kind == LegKind::Hold => self.speed_after(leg, rotor),
+            (Some(before), _) => self
+                .legs
+                .get(before)
+                .map_or_else(Speed::zero, |leg| self.speed_after(leg, rotor)),
+            (None, _) => Speed::zero(),
+        }
     }
     fn speed_after(&self, leg: &Leg, rotor: RotorId) -> Speed {
         match (leg.kind, self.speeds_of(leg)) {
@@ -165,19 +171,22 @@ impl Plan {
                     .over(&leg.ticks.time(self.tick()));
                 &self.phase_before(index, rotor) + &held
             }
-            _ => self
-                .rig
-                .rotor(rotor)
-                .motor_phase(&leg.landing.of(rotor).turns()),
+            _ => self.landed(leg, rotor),
         }
     }
     /// The unwrapped motor phase at the start of a leg; 0 at the start of the run-up.
     #[must_use]
     pub fn phase_before(&self, index: usize, rotor: RotorId) -> Turns {
-        match index.checked_sub(1) {
-            Some(before) => self.phase_after(before, rotor),
-            None => Turns::zero(),
+        match (index.checked_sub(1), self.legs.get(index)) {
+            (_, Some(leg)) if leg.kind == LegKind::Hold => self.landed(leg, rotor),
+            (Some(before), _) => self.phase_after(before, rotor),
+            (None, _) => Turns::zero(),
         }
+    }
+    fn landed(&self, leg: &Leg, rotor: RotorId) -> Turns {
+        self.rig
+            .rotor(rotor)
+            .motor_phase(&leg.landing.of(rotor).turns())
     }
     /// The exact move of one rotor in a leg.
     #[must_use]
@@ -210,7 +219,36 @@ impl Plan {
 }
 
 impl Plan {
-    fn shape(&self, _index: usize, _rotor: RotorId, transition: &Transition) -> Shape {
-        Shape::Law(transition.law.clone())
+    /// Whether a leg closes the loop: the last one of a show that loops.
+    #[must_use]
+    pub fn closes(&self, index: usize) -> bool {
+        self.loop_leg.is_some() && index + 1 == self.legs.len()
+    }
+    /// What a transition has to end on; `None` for a hold.
+    #[must_use]
+    pub fn aim(&self, index: usize) -> Option<Aim> {
+        let leg = self.legs.get(index)?;
+        let speeds = self.speeds_of(leg)?;
+        (leg.kind != LegKind::Hold)
+            .then(|| schedule::aim(&self.rig, speeds, leg.kind, self.closes(index)))
+    }
+    fn shape(&self, index: usize, rotor: RotorId, transition: &Transition) -> Shape {
+        let law = &transition.law;
+        if law.kind != LawKind::Scurve {
+            return Shape::Law(law.clone());
+        }
+        let (Some(leg), Some(aim)) = (self.legs.get(index), self.aim(index)) else {
+            return Shape::Hold;
+        };
+        let from = Pair::each(|id| self.speed_before(index, id));
+        let to = Pair::each(|id| self.speed_after(leg, id));
+        let passage = Passage {
+            rig: &self.rig,
+            law,
+            from: &from,
+            to: &to,
+            aim: &aim,
+        };
+        passage.shape(rotor, leg.ticks)
     }
 }

@@ -1,0 +1,87 @@
+//! Time spent below the stall speed in a morph between cues, or the loop's.
+
+use super::gather::Gather;
+use super::transition_place;
+use super::words::{limit, speed};
+use crate::exact::{Speed, decimal, from_f64};
+use crate::finding::{Code, Finding, Severity};
+use crate::motion::profile::Profile;
+use crate::plan::{LegKind, Plan};
+use crate::rig::RotorId;
+
+pub(super) struct Judge<'a> {
+    plan: &'a Plan,
+}
+
+impl<'a> Judge<'a> {
+    pub(super) fn new(plan: &'a Plan) -> Self {
+        Self { plan }
+    }
+
+    pub(super) fn check(&mut self, index: usize, gather: &mut Gather) {
+        let plan = self.plan;
+        let Some(leg) = plan.legs.get(index) else {
+            return;
+        };
+        if !matches!(leg.kind, LegKind::Morph | LegKind::LoopMorph) {
+            return;
+        }
+        let crossing: Vec<RotorId> = RotorId::BOTH
+            .into_iter()
+            .filter(|id| crosses(plan, index, *id))
+            .collect();
+        if crossing.is_empty() {
+            return;
+        }
+        let place = transition_place(plan, leg.kind, leg.written);
+        gather.note(Code::StallCrossing, Severity::Warning, place, || {
+            let spent: Vec<String> = crossing
+                .iter()
+                .filter_map(|id| {
+                    let seconds = from_f64(time_below(plan, index, *id))?;
+                    let stall = &plan.rig.rotor(*id).stall_speed.value;
+                    let shown = limit(&decimal(&seconds, 3).parse().unwrap_or(seconds));
+                    Some(format!(
+                        "rotor {} spends {shown} s below its stall speed of {}",
+                        id.name(),
+                        speed(stall)
+                    ))
+                })
+                .collect();
+            let first = crossing.first().copied().unwrap_or(RotorId::A);
+            Finding::new(Code::StallCrossing, place, spent.join("; "))
+                .also_at(plan.rig.rotor(first).stall_speed.place, "the stall speed")
+                .help("a figure with the same senses before it, or a dark morph, would not show it")
+        });
+    }
+}
+
+fn time_below(plan: &Plan, index: usize, id: RotorId) -> f64 {
+    let stall = plan.rig.rotor(id).stall_speed.value.to_f64();
+    plan.move_of(index, id)
+        .map_or(0.0, |one| Profile::of(&one, plan.tick()).time_below(stall))
+}
+
+/// Whether a rotor is at 0 < |v| < stall speed at some time of a morph; one that stands before and after is only
+/// nudged by a landing and does not count.
+fn crosses(plan: &Plan, index: usize, id: RotorId) -> bool {
+    let stall = &plan.rig.rotor(id).stall_speed.value;
+    if stall.is_zero() {
+        return false;
+    }
+    let from = plan.speed_before(index, id);
+    let to = plan
+        .legs
+        .get(index)
+        .and_then(|leg| plan.speeds_of(leg))
+        .map_or_else(Speed::zero, |speeds| speeds.motor.of(id).clone());
+    if from.is_zero() && to.is_zero() {
+        return false;
+    }
+    let below = |speed: &Speed| &speed.abs() < stall;
+    if below(&from) || below(&to) || from.sign() != to.sign() {
+        return true;
+    }
+    // Both ends run evenly, the same way: only an overshoot or a strong correction dips below.
+    time_below(plan, index, id) > 0.0
+}
