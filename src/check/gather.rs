@@ -1,14 +1,14 @@
 //! Gathers findings and merges those of one code at one place as they come, so that a cue played a million times costs one.
 
 use crate::finding::{Code, Finding, Place, Severity};
-use std::collections::HashMap;
+use std::collections::BTreeMap;
 
 /// Findings so far.
 #[derive(Debug, Default)]
 pub(super) struct Gather {
     findings: Vec<Finding>,
-    /// Where each stands; only looked up, never walked, so its order reaches no output.
-    known: HashMap<(Code, Severity, Place), usize>,
+    /// Where each stands.
+    known: BTreeMap<(Code, Severity, Place), usize>,
 }
 
 impl Gather {

@@ -11,7 +11,7 @@ use crate::plan::schedule::{self, ends};
 use crate::plan::{LegKind, Plan};
 use crate::rig::{Pair, Rotor, RotorId, Turning};
 use crate::show::Transition;
-use std::collections::HashMap;
+use std::collections::BTreeMap;
 
 /// One limit that a rotor breaks.
 #[derive(Clone, Debug)]
@@ -39,16 +39,16 @@ struct Owned<'a> {
 pub(super) struct Judge<'a> {
     plan: &'a Plan,
     /// Whether a passage fits at a duration whatever the pose before: then no play of it needs a look of its own.
-    fits: HashMap<(Spot, bool, Ticks), bool>,
-    shortest: HashMap<(Spot, bool), Option<Ticks>>,
+    fits: BTreeMap<(Spot, bool, Ticks), bool>,
+    shortest: BTreeMap<(Spot, bool), Option<Ticks>>,
 }
 
 impl<'a> Judge<'a> {
     pub(super) fn new(plan: &'a Plan) -> Self {
         Self {
             plan,
-            fits: HashMap::new(),
-            shortest: HashMap::new(),
+            fits: BTreeMap::new(),
+            shortest: BTreeMap::new(),
         }
     }
 

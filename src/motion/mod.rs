@@ -10,7 +10,7 @@ pub mod real;
 use crate::exact::{Rational, Seconds, Speed, Ticks, Turns, ratio};
 
 /// How a speed goes over from 0 to 1, as written.
-#[derive(Clone, Debug, PartialEq, Eq, Hash)]
+#[derive(Clone, Debug, PartialEq, Eq, PartialOrd, Ord, Hash)]
 pub enum LawKind {
     /// s = u.
     Linear,
@@ -63,7 +63,7 @@ impl LawKind {
 }
 
 /// A law with its skew.
-#[derive(Clone, Debug, PartialEq, Eq, Hash)]
+#[derive(Clone, Debug, PartialEq, Eq, PartialOrd, Ord, Hash)]
 pub struct Law {
     /// Which law.
     pub kind: LawKind,

@@ -19,7 +19,7 @@ use passage::{Aim, Passage};
 use std::sync::Arc;
 
 /// What a stretch of time is.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord, Hash)]
 pub enum LegKind {
     /// From rest to the first cue.
     RunUp,

@@ -11,7 +11,7 @@ use crate::motion::Law;
 use crate::rig::{Pair, Rig};
 use crate::show::{Cue, Ending, Hold, Length, Show, Transition, WrittenCue};
 use num_traits::{Signed, ToPrimitive, Zero};
-use std::collections::HashMap;
+use std::collections::BTreeMap;
 
 /// The longest show, in seconds: thirty days.
 pub const MOST_SECONDS: i128 = 30 * 24 * 3600;
@@ -124,8 +124,8 @@ type Motion = (
 struct Fastest<'a> {
     rig: &'a Rig,
     speeds: &'a [Option<CueSpeeds>],
-    by_legs: HashMap<Legs, Option<Ticks>>,
-    by_motion: HashMap<Motion, Option<Ticks>>,
+    by_legs: BTreeMap<Legs, Option<Ticks>>,
+    by_motion: BTreeMap<Motion, Option<Ticks>>,
 }
 
 impl Fastest<'_> {
@@ -206,8 +206,8 @@ pub fn schedule(show: &Show, rig: &Rig, speeds: &[Option<CueSpeeds>]) -> Schedul
         fastest: Fastest {
             rig,
             speeds,
-            by_legs: HashMap::new(),
-            by_motion: HashMap::new(),
+            by_legs: BTreeMap::new(),
+            by_motion: BTreeMap::new(),
         },
         schedule: Schedule {
             complete: true,

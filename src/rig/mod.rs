@@ -33,7 +33,7 @@ impl RotorId {
 }
 
 /// A pair of values, one for each rotor.
-#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, Hash)]
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, PartialOrd, Ord, Hash)]
 pub struct Pair<T> {
     /// Rotor a's.
     pub a: T,

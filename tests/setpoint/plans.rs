@@ -6,6 +6,7 @@ use phasewright::exact::{
 use phasewright::figure::{Figure, Form, Ratio};
 use phasewright::finding::Place;
 use phasewright::motion::{Law, LawKind};
+use phasewright::plan::landing::Shares;
 use phasewright::plan::{CueSpeeds, Leg, LegKind, Plan};
 use phasewright::rig::{Gear, Pair, Projection, Rig, Rotor, RotorId, Stated, TableKind, Turning};
 use phasewright::show::{Cue, Ending, Hold, Land, Length, Pace, Show, Transition, WrittenCue};
@@ -122,6 +123,7 @@ impl Maker {
             motor: Pair::each(|id| self.rig.rotor(id).motor_speed(mirror.of(id))),
             mirror,
             pose: None,
+            shares: Shares::new(figure.ratio, &self.rig),
         }));
         self.show.cues.push(WrittenCue::Good(Box::new(Cue {
             place: Place::default(),
