@@ -29,6 +29,17 @@ macro_rules! codes {
             pub fn page(self) -> &'static str {
                 match self { $(Code::$name => include_str!(concat!("pages/", $text, ".md")),)* }
             }
+            /// What it means, in one sentence: the first line of its page after the heading.
+            #[must_use]
+            pub fn summary(self) -> &'static str {
+                let mut lines = self.page().lines().filter(|line| !line.is_empty());
+                lines.find(|line| !line.starts_with('#')).unwrap_or_default()
+            }
+            /// The code written `text`.
+            #[must_use]
+            pub fn named(text: &str) -> Option<Code> {
+                Code::ALL.iter().copied().find(|code| code.text() == text)
+            }
         }
     };
 }

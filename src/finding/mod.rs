@@ -3,8 +3,11 @@
 //! Every stage returns its value *and* its findings; only `main` prints them.
 
 mod code;
+pub mod lines;
+pub mod render;
 
 pub use code::Code;
+pub use lines::{Locator, Position};
 
 /// How much a finding matters.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord, Hash)]
@@ -69,6 +72,10 @@ impl Sources {
         });
         id
     }
+    /// The names of all files.
+    pub fn names(&self) -> impl Iterator<Item = &str> {
+        self.files.iter().map(|file| file.name.as_str())
+    }
     /// The file of a place.
     #[must_use]
     pub fn get(&self, id: FileId) -> Option<&Source> {
@@ -108,6 +115,11 @@ impl Finding {
             help: None,
             count: 1,
         }
+    }
+    /// Whether it keeps the table from being written.
+    #[must_use]
+    pub fn is_error(&self) -> bool {
+        self.severity == Severity::Error
     }
     /// With another severity than the usual one of its code.
     #[must_use]
