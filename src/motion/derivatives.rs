@@ -4,12 +4,15 @@ use super::Shape;
 use super::bezier::Bezier;
 use super::laws::{Curve, Polynomial, Stretch, Symmetric, Wave};
 use crate::exact::{Rational, to_f64, whole};
-use num_traits::{One, Zero};
+use num_traits::{One, Signed, Zero};
 use std::f64::consts::TAU;
 
 pub use super::real::{Interval, IntervalDual, Real};
 
-/// A smooth piece of a law, in a variable x of its own: u itself, or the curve's parameter for a Bézier.
+/// A smooth piece of a law, in a variable x of its own that grows with u; [`Piece::u`] tells which u it means.
+///
+/// For a symmetric law x is w = u/scale before the middle and −w, w = (1−u)/scale, after it: counted from the nearer end and
+/// in units of the stretch, so that nothing cancels in `f64` however short the stretch. For a Bézier x is its parameter.
 #[derive(Clone, Debug)]
 pub struct Piece {
     /// Where x starts.
@@ -25,7 +28,7 @@ enum Form {
     Bezier(Arc),
 }
 
-/// Part of a half of a symmetric law, in w = x/scale, or w = (1−x)/scale after the middle.
+/// Part of a half of a symmetric law, in w = x, or w = −x after the middle.
 #[derive(Clone, Debug)]
 struct Part {
     after: bool,
@@ -97,21 +100,18 @@ fn bezier(shape: &Shape) -> Option<Bezier> {
 
 /// The pieces of one half that takes `length` of the morph, from its own end towards the middle.
 fn half(stretches: &[Stretch], length: &Rational, after: bool) -> Vec<Piece> {
+    if !length.is_positive() {
+        return Vec::new();
+    }
     let stretched = length * whole(2);
     let mut low = Rational::zero();
     let mut pieces = Vec::new();
     for stretch in stretches {
         let high = &stretch.until * &stretched;
-        let ends = if after {
-            (to_f64(&(whole(1) - &high)), to_f64(&(whole(1) - &low)))
-        } else {
-            (to_f64(&low), to_f64(&high))
-        };
-        let part = Part::new(
-            &stretch.float,
-            to_f64(&(&stretch.scale * &stretched)),
-            after,
-        );
+        let scale = &stretch.scale * &stretched;
+        let (near, far) = (to_f64(&(&low / &scale)), to_f64(&(&high / &scale)));
+        let ends = if after { (-far, -near) } else { (near, far) };
+        let part = Part::new(&stretch.float, to_f64(&scale), after);
         // A stretch so short that it vanishes in `f64` has nothing to say.
         if ends.0 < ends.1 && part.inverse.is_finite() {
             pieces.push(Piece {
@@ -140,8 +140,12 @@ impl Part {
     }
 
     fn w<R: Real>(&self, x: R) -> R {
-        let inward = if self.after { R::constant(1.0) - x } else { x };
-        inward * R::constant(self.inverse)
+        if self.after { -x } else { x }
+    }
+
+    fn u<R: Real>(&self, x: R) -> R {
+        let u = x * R::constant(self.scale);
+        if self.after { u + R::constant(1.0) } else { u }
     }
 
     /// The wave's part of P, P′ or P″: each derivative brings a factor 2π·rate and a quarter turn.
@@ -215,13 +219,13 @@ impl Piece {
         }
     }
 
-    /// u at the piece's own x in [`from`, `to`]: x itself, but for a Bézier.
+    /// u at the piece's own x in [`from`, `to`].
     ///
     /// [`from`]: Piece::from
     /// [`to`]: Piece::to
     pub fn u<R: Real>(&self, x: R) -> R {
         match &self.form {
-            Form::Half(_) => x,
+            Form::Half(part) => part.u(x),
             Form::Bezier(arc) => horner(&arc.across, x),
         }
     }

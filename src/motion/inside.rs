@@ -22,7 +22,7 @@ use crate::exact::root::{ROOT_BITS, root_product, root_steps};
 use crate::exact::sine::sine_and_cosine;
 use crate::exact::{Rational, Seconds, to_f64, whole};
 use num_bigint::BigInt;
-use num_traits::{One, ToPrimitive};
+use num_traits::{One, Signed, ToPrimitive};
 
 /// What a move adds to the straight line start + from·t, ready to be read at any tick.
 #[derive(Clone, Debug)]
@@ -159,8 +159,12 @@ impl Skewed {
     fn new(law: &Symmetric, speed: &Rational, turns: &Rational) -> Self {
         let side = |length: &Rational| -> Vec<Piece> {
             let stretched = length * whole(2);
+            // A skew that leaves nothing of a side cannot be written; such a side says nothing.
             let pieces = law.half.stretches.iter();
-            pieces.map(|part| Piece::new(part, &stretched)).collect()
+            pieces
+                .filter(|_| stretched.is_positive())
+                .map(|part| Piece::new(part, &stretched))
+                .collect()
         };
         Self {
             speed: phase_steps(speed),

@@ -6,6 +6,11 @@
     clippy::panic
 )]
 
+mod accuracy;
 mod bezier;
+mod derivatives;
+mod enclosure;
+mod properties;
 mod published;
+mod skew;
 mod support;
