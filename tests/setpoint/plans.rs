@@ -148,6 +148,12 @@ impl Maker {
     pub(crate) fn leg(&mut self, kind: LegKind, cue: u32, written: u32, ticks: u64, beam: u8) {
         let index = self.plan.legs.len();
         let start = self.plan.total();
+        // A hold keeps the landing of the transition before it.
+        let landed = self
+            .plan
+            .legs
+            .last()
+            .map_or_else(Pair::default, |leg| leg.landing);
         self.plan.legs.push(Leg {
             kind,
             cue,
@@ -155,7 +161,7 @@ impl Maker {
             start,
             ticks: Ticks(ticks),
             beam,
-            landing: Pair::default(),
+            landing: landed,
         });
         if matches!(kind, LegKind::Hold | LegKind::RunDown) {
             return;
