@@ -14,6 +14,8 @@
 //!          ▼
 //!        Plan             plan                                   exact moves of both rotors, in whole ticks
 //!          │
+//!          ├──────────▶ runsheet   ─────▶ text, CSV, JSON, MD    what a person needs who runs it
+//!          │
 //!          ├──────────▶ check      ─────▶ findings               what the motors could not do, with the value that would pass
 //!          │
 //!          │  setpoint    (integer fixed point; blocks in parallel, in order)
@@ -46,5 +48,6 @@ pub mod language;
 pub mod motion;
 pub mod plan;
 pub mod rig;
+pub mod runsheet;
 pub mod setpoint;
 pub mod show;
