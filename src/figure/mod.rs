@@ -1,5 +1,7 @@
 //! Ratio algebra: p : q, lobes, the named curves and their forms, the pose.
 
+pub mod forms;
+
 use crate::exact::{Rational, Turns, ratio, whole, wrap_unit};
 use num_integer::Integer;
 
