@@ -46,6 +46,7 @@ pub mod figure;
 pub mod finding;
 pub mod language;
 pub mod motion;
+pub mod optics;
 pub mod plan;
 pub mod rig;
 pub mod runsheet;
