@@ -16,6 +16,7 @@ pub use peaks::{Peak, Peaks, peaks};
 
 use crate::finding::{Finding, Place, Severity};
 use crate::plan::build::{Draft, draft};
+use crate::plan::schedule::Remark;
 use crate::plan::{CueSpeeds, LegKind, Plan};
 use crate::rig::Rig;
 use crate::show::{Cue, Ending, Show, WrittenCue};
@@ -92,6 +93,18 @@ fn plays(draft: &Draft) -> Vec<u64> {
 fn transitions(draft: &Draft, faulty: &[bool], gather: &mut Gather) {
     let plan = &draft.plan;
     let is_faulty = |written: u32| faulty.get(written as usize).copied().unwrap_or(true);
+    for remark in &draft.remarks {
+        if let Remark::NeverFits {
+            kind,
+            written,
+            before,
+        } = remark
+            && !is_faulty(*written)
+            && !before.is_some_and(is_faulty)
+        {
+            gather.add(limits::never_fits(plan, *kind, *before, *written));
+        }
+    }
     let mut limits = limits::Judge::new(plan);
     let mut stall = stall::Judge::new(plan);
     for (index, leg) in plan.legs.iter().enumerate() {
