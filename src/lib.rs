@@ -48,6 +48,7 @@ pub mod language;
 pub mod motion;
 pub mod optics;
 pub mod plan;
+pub mod preview;
 pub mod rig;
 pub mod runsheet;
 pub mod setpoint;

@@ -18,6 +18,7 @@
 //! same bytes on every machine.
 
 pub mod colour;
+pub mod path;
 pub mod trace;
 
 use crate::exact::{Length, Turns};
@@ -57,6 +58,7 @@ pub struct Optics {
     trace: Option<Trace>,
     model: Model,
     beam: Beam,
+    extent: f64,
 }
 
 /// The light on the wall.
@@ -96,7 +98,9 @@ impl Optics {
                 known: false,
                 wavelength: None,
             },
+            extent: 0.0,
         };
+        optics.extent = optics.farthest();
         optics.beam = beam(rig, &optics);
         optics
     }
@@ -153,10 +157,14 @@ impl Optics {
         }
     }
 
-    /// The largest distance from the origin that a spot can have, from a grid of both phases and a margin for what lies
-    /// between: pictures of one rig share this scale.
+    /// The largest distance from the origin that a spot can have, to half a percent: pictures of one rig share this scale.
     #[must_use]
     pub fn extent(&self) -> f64 {
+        self.extent
+    }
+
+    /// From a grid of both phases, with a margin for what lies between.
+    fn farthest(&self) -> f64 {
         let steps = 48;
         let mut largest: f64 = 0.0;
         for a in 0..steps {

@@ -22,7 +22,7 @@
 //! Reflection is r = d − 2(d·n)n (Hecht, *Optics*, from memory).
 
 use super::sin_cos_turns;
-use crate::rig::Pair;
+use crate::rig::{Pair, RotorId};
 use kurbo::Point;
 use std::ops::{Add, Mul, Neg, Sub};
 
@@ -109,7 +109,7 @@ pub struct Geometry {
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub enum Impossible {
     /// The light would meet this mirror on edge or from behind.
-    Grazes(crate::rig::RotorId),
+    Grazes(RotorId),
     /// The light would leave alongside the wall or away from it.
     MissesWall,
     /// A length or an angle is negative, zero where it must not be, or no number.
@@ -165,10 +165,10 @@ impl Trace {
             return Err(Impossible::NoNumber);
         }
         if incidence.a + angle.a > GRAZING {
-            return Err(Impossible::Grazes(crate::rig::RotorId::A));
+            return Err(Impossible::Grazes(RotorId::A));
         }
         if incidence.b + 2.0 * angle.a + angle.b > GRAZING {
-            return Err(Impossible::Grazes(crate::rig::RotorId::B));
+            return Err(Impossible::Grazes(RotorId::B));
         }
         if 2.0 * (angle.a + angle.b) > GRAZING {
             return Err(Impossible::MissesWall);
@@ -204,6 +204,25 @@ impl Trace {
         &self.geometry
     }
 
+    /// A mirror's untilted normal, and the horizontal direction that throws the light right when the normal leans to it.
+    #[must_use]
+    pub fn mirror(&self, id: RotorId) -> (Vec3, Vec3) {
+        let mirror = self.mirror.of(id);
+        (mirror.shaft, mirror.across)
+    }
+
+    /// Direction of the light before mirror a.
+    #[must_use]
+    pub fn incoming(&self) -> Vec3 {
+        reflect(reflect(INTO_WALL, self.mirror.b.shaft), self.mirror.a.shaft)
+    }
+
+    /// From mirror a's centre to mirror b's.
+    #[must_use]
+    pub fn a_to_b(&self) -> Vec3 {
+        self.to_b
+    }
+
     /// The unit normals of both mirrors at these phases, in turns.
     #[must_use]
     pub fn normals(&self, phases: Pair<f64>) -> Pair<Vec3> {
@@ -227,9 +246,7 @@ impl Trace {
     #[must_use]
     pub fn after_b(&self, phases: Pair<f64>) -> (Vec3, Vec3) {
         let normal = self.normals(phases);
-        // The untilted light comes to a along the direction that leaves b along −z.
-        let incoming = reflect(reflect(INTO_WALL, self.mirror.b.shaft), self.mirror.a.shaft);
-        let between = reflect(incoming, normal.a);
+        let between = reflect(self.incoming(), normal.a);
         // From a at −to_b along `between` to the plane of b through the origin.
         let way = self.to_b.dot(normal.b) / between.dot(normal.b);
         let hit = between * way - self.to_b;

@@ -8,7 +8,9 @@
 
 mod against_a_ray_tracer;
 mod colour;
+mod path;
 mod reflection;
+mod show;
 
 /// Both ways: too small fails like too large, and so does no number.
 pub(crate) fn assert_close(got: f64, want: f64, tolerance: f64, why: &str) {
