@@ -3,7 +3,7 @@
 use crate::assert_close;
 use crate::show::planned;
 use phasewright::exact::fixed::phase_value;
-use phasewright::exact::{Ticks, to_f64, whole};
+use phasewright::exact::{Ticks, to_f64};
 use phasewright::motion::inside::Inside;
 use phasewright::optics::path::LegPath;
 use phasewright::plan::LegKind;
@@ -67,7 +67,6 @@ fn phases_and_speeds_are_the_exact_ones() {
         legs += usize::from(leg.kind == LegKind::Morph);
     }
     assert_eq!(legs, 2 * LAWS.len(), "morphs looked at");
-    let _ = whole(1);
 }
 
 /// The acceleration is the slope of the speed.
