@@ -5,7 +5,7 @@
 use super::Rational;
 use super::fixed::scaled;
 use num_bigint::BigInt;
-use num_traits::{Signed, Zero};
+use num_traits::{Signed, ToPrimitive, Zero};
 
 /// Bits after the point of the numbers here.
 pub const ROOT_BITS: u32 = 256;
@@ -98,9 +98,18 @@ impl RisingCubic {
     }
 
     /// A first guess, from plain arithmetic only, so that it too is the same on every machine.
+    #[expect(
+        clippy::cast_precision_loss,
+        clippy::cast_possible_truncation,
+        clippy::cast_sign_loss,
+        reason = "a guess in [0, 1): any rounding of it will do"
+    )]
     fn start(&self, target: &BigInt) -> BigInt {
+        const HEAD: u32 = 63;
+        const SCALE: f64 = (1_u64 << HEAD) as f64;
         let [c1, c2, c3] = self.float;
-        let aim = super::to_f64(&Rational::new(target.clone(), BigInt::from(1) << ROOT_BITS));
+        let head = (target >> (ROOT_BITS - HEAD)).to_u64().unwrap_or(0);
+        let aim = head as f64 / SCALE;
         let (mut low, mut high) = (0.0, 1.0);
         for _ in 0..53 {
             let middle = 0.5 * (low + high);
@@ -110,6 +119,6 @@ impl RisingCubic {
                 high = middle;
             }
         }
-        super::from_f64(0.5 * (low + high)).map_or_else(BigInt::zero, |guess| root_steps(&guess))
+        BigInt::from((0.5 * (low + high) * SCALE) as u64) << (ROOT_BITS - HEAD)
     }
 }

@@ -5,7 +5,7 @@
 //! In steps of ε = 2⁻¹²⁰, for the symmetric laws: u carries ½ε; w = u/scale at most 8ε for scales down to 1/10 (`scurve`
 //! with a small share: at most 2ε/scale, which scale·s′ ≤ 2 brings down again); a polynomial of at most four
 //! coefficients below 84, on w ≤ ½, adds at most 8ε and a wave at most 16ε of amplitude ½. Slopes are at most 2.2. So s
-//! and S are within 64ε = 2⁻¹¹⁴ (the tests measure less than 2⁻¹¹⁶), and a phase of |to − from|·T ≤ 2⁴⁰ turns is within
+//! and S are within 64ε = 2⁻¹¹⁴ (the tests see up to 2⁻¹¹⁷), and a phase of |to − from|·T ≤ 2⁴⁰ turns is within
 //! 2⁻⁷⁴ of that, plus half a step of 2⁻⁷² for each of the two products and of the two factors: below 2⁻⁷⁰ turn. For the
 //! Bézier see its own module.
 //!
@@ -142,15 +142,16 @@ impl Inside {
     /// Phase and speed in one go, see [`Inside::phase`] and [`Inside::speed`].
     #[must_use]
     pub fn at(&self, n: u64) -> (i128, i128) {
+        let u = Unit::share(n, self.ticks);
         let (turns, speed) = match &self.change {
             Change::None => (0, 0),
-            Change::Symmetric(law) => law.at(Unit::share(n, self.ticks)),
+            Change::Symmetric(law) => law.at(u),
             Change::Bezier(law) => law.at(n, self.ticks),
         };
         let Some(bump) = &self.bump else {
             return (turns, speed);
         };
-        let (turned, rate) = bump.at(Unit::share(n, self.ticks));
+        let (turned, rate) = bump.at(u);
         (turns.wrapping_add(turned), speed.wrapping_add(rate))
     }
 }

@@ -30,8 +30,8 @@ fn table() -> Vec<(Rational, Rational, Rational)> {
 
 #[test]
 fn sine_and_cosine_agree_with_mpmath() {
-    // Argued: 2⁻¹¹⁶ for the routine, and 2π·2⁻¹²¹ for an angle that is not a whole number of steps.
-    let tolerance = power(-116) + power(-118);
+    // Argued: 2⁻¹¹⁷ for the routine, and 2π·2⁻¹²¹ for an angle that is not a whole number of steps.
+    let tolerance = power(-117) + power(-118);
     for (angle, want_sine, want_cosine) in table() {
         let unit = Unit::nearest(&angle);
         assert_close(

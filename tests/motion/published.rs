@@ -5,7 +5,8 @@
 //! project, since printed tables carry few digits and some misprints.
 
 use crate::support::{assert_close, gain_at, kind, plain, speed_at};
-use phasewright::exact::to_f64;
+use phasewright::exact::{ratio, to_f64};
+use phasewright::motion::Shape;
 
 /// Half a unit in the tenth decimal, what a value printed with ten decimals promises.
 const TEN_DIGITS: f64 = 0.6e-10;
@@ -62,4 +63,16 @@ fn laws_have_their_published_half_integrals() {
         let got = to_f64(&gain_at(&plain(kind(name)), 50, 100));
         assert_close(got, half, TEN_DIGITS, &format!("{name} S(1/2)"));
     }
+}
+
+/// Constant acceleration up, then down: the parabolic law (Rothbart, p. 35, eqs 2.17–2.20), here `scurve` at its softest.
+#[test]
+fn the_s_curve_without_a_plateau_is_the_parabolic_law() {
+    let shape = Shape::Scurve(ratio(1, 2));
+    for (n, want) in [(10, 0.02), (25, 0.125), (40, 0.32)] {
+        let got = to_f64(&speed_at(&shape, n, 100));
+        assert_close(got, want, 1e-16, &format!("s({n}/100)"));
+    }
+    let half = to_f64(&gain_at(&shape, 50, 100));
+    assert_close(half, 1.0 / 12.0, 1e-16, "S(1/2)");
 }
