@@ -6,6 +6,7 @@ pub mod inside;
 mod laws;
 pub mod profile;
 pub mod real;
+mod search;
 
 use crate::exact::{Rational, Seconds, Speed, Ticks, Turns, ratio};
 
