@@ -1,1 +1,96 @@
 //! An independent second look at a table.
+//!
+//! The auditor reads the bytes of a table and works every row out again from the plan's exact moves, with an evaluator of
+//! its own: it uses nothing of `plan/`, `setpoint/`, `motion/` and `exact/` that evaluates. Where rows are made by exact
+//! running sums, it divides; where they are made in integer fixed point, it uses double-double arithmetic and other
+//! algebraic forms of the laws. A slip in one of the two shows as a difference.
+//!
+//! [`Auditor`] takes bytes as they come, so it can look at a stream while it is written; [`audit`] reads a whole table.
+//! Memory is bounded whatever the length.
+
+mod bezier;
+mod double;
+mod fields;
+mod head;
+mod laws;
+mod rows;
+mod sine;
+mod stream;
+mod wanted;
+
+pub use stream::{Auditor, audit};
+
+use std::fmt;
+
+/// Problems kept in full; the rest are counted.
+pub const MOST_PROBLEMS: usize = 50;
+
+/// One thing that is not as it must be.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct Problem {
+    /// The tick of the row, where it is in a row.
+    pub tick: Option<u64>,
+    /// The column, the key of the head, or the part of the table.
+    pub column: String,
+    /// What must stand there.
+    pub wanted: String,
+    /// What stands there.
+    pub found: String,
+}
+
+impl fmt::Display for Problem {
+    fn fmt(&self, out: &mut fmt::Formatter<'_>) -> fmt::Result {
+        if let Some(tick) = self.tick {
+            write!(out, "tick {tick}, ")?;
+        }
+        write!(
+            out,
+            "{}: wanted {}, found {}",
+            self.column, self.wanted, self.found
+        )
+    }
+}
+
+/// What an audit came to.
+#[derive(Clone, Debug, Default, PartialEq, Eq)]
+pub struct Report {
+    /// Rows read.
+    pub rows: u64,
+    /// The first problems, at most [`MOST_PROBLEMS`], in the order of the table.
+    pub problems: Vec<Problem>,
+    /// How many there are in all.
+    pub count: u64,
+}
+
+impl Report {
+    /// Whether nothing is wrong.
+    #[must_use]
+    pub fn is_clean(&self) -> bool {
+        self.count == 0
+    }
+
+    fn add(&mut self, problem: Problem) {
+        self.count += 1;
+        if self.problems.len() < MOST_PROBLEMS {
+            self.problems.push(problem);
+        }
+    }
+
+    fn absorb(&mut self, other: Self) {
+        self.rows += other.rows;
+        self.count += other.count;
+        let room = MOST_PROBLEMS.saturating_sub(self.problems.len());
+        self.problems.extend(other.problems.into_iter().take(room));
+    }
+}
+
+/// A piece of the table as a message shows it: cut where it is long.
+fn shown(bytes: &[u8]) -> String {
+    const MOST: usize = 60;
+    let text = String::from_utf8_lossy(bytes);
+    let mut short: String = text.chars().take(MOST).collect();
+    if short.len() < text.len() {
+        short.push('…');
+    }
+    format!("`{}`", short.escape_debug())
+}

@@ -4,7 +4,6 @@
 //! Exact quantities are strings (a decimal where there is one, else `n/d`); counts and ticks are numbers.
 
 use super::beam::latency_ticks;
-use super::id::table_id;
 use super::{COLUMNS, TURN_PLACES};
 use crate::exact::{Rational, Turns, exact_decimal, ratio, whole};
 use crate::figure::Ratio;
@@ -20,6 +19,8 @@ pub const JSON_FORMAT: u32 = 1;
 /// What the head tells beside the plan.
 #[derive(Clone, Copy, Debug, Default)]
 pub struct Head<'f> {
+    /// The table's ID, see [`table_id`](super::table_id).
+    pub id: &'f str,
     /// The findings of the run that made the table, already rendered as JSON objects.
     pub findings: &'f [Value],
 }
@@ -31,7 +32,7 @@ impl Head<'_> {
         writeln!(out, "{{")?;
         line(out, "format", &JSON_FORMAT)?;
         line(out, "program", &program())?;
-        line(out, "table", &table_id(plan))?;
+        line(out, "table", &self.id)?;
         line(
             out,
             "show",

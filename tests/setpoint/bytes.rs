@@ -12,7 +12,9 @@ fn bytes(plan: &Plan, form: Form) -> Vec<u8> {
     let mut out = Vec::new();
     let mut told = Vec::new();
     let findings = [serde_json::json!({"code": "time/rounded"})];
+    let id = table_id(plan);
     let head = Head {
+        id: &id,
         findings: &findings,
     };
     write_table(plan, form, &head, &mut out, &mut |rows| told.push(rows)).unwrap();

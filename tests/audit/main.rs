@@ -1,0 +1,34 @@
+//! The auditor: clean tables pass, and nothing that is changed in one goes unseen.
+#![allow(
+    clippy::unwrap_used,
+    clippy::expect_used,
+    clippy::indexing_slicing,
+    clippy::panic,
+    missing_docs
+)]
+
+mod clean;
+mod corrupt;
+#[path = "../setpoint/plans.rs"]
+mod plans;
+
+use phasewright::audit::{Report, audit};
+use phasewright::plan::Plan;
+use phasewright::setpoint::{Form, Head, table_id, write_table};
+
+/// The table of `plan` as bytes.
+fn table(plan: &Plan, form: Form) -> Vec<u8> {
+    let id = table_id(plan);
+    let findings = [serde_json::json!({"code": "time/rounded", "message": "moved by 0.4 ms"})];
+    let head = Head {
+        id: &id,
+        findings: &findings,
+    };
+    let mut out = Vec::new();
+    write_table(plan, form, &head, &mut out, &mut |_| ()).unwrap();
+    out
+}
+
+fn audited(plan: &Plan, form: Form, table: &[u8]) -> Report {
+    audit(plan, form, &table_id(plan), &mut &*table, &mut |_| ()).unwrap()
+}
