@@ -225,21 +225,20 @@ impl<'p> Heads<'p> {
     fn mirror(&self, index: usize, id: RotorId) -> String {
         let plan = self.plan;
         let rotor = plan.rig.rotor(id);
-        let legs = |back: usize| index.checked_sub(back).and_then(|at| plan.legs.get(at));
+        let before = index.checked_sub(1).and_then(|at| plan.legs.get(at));
         let landing = |leg: &Leg| {
             Rational::new(
                 BigInt::from(leg.landing.of(id).0),
                 BigInt::from(GRID_PER_TURN),
             )
         };
-        let phase = match legs(1) {
+        let phase = match before {
             None => rotor.index_angle().value().clone(),
             Some(leg) if leg.kind == LegKind::Hold => {
-                let start = legs(2).map_or_else(Rational::zero, landing);
                 let speed = plan.speeds_of(leg).map_or_else(Rational::zero, |speeds| {
                     speeds.mirror.of(id).value().clone()
                 });
-                start + speed * plan.tick().value() * whole(leg.ticks.0.into())
+                landing(leg) + speed * plan.tick().value() * whole(leg.ticks.0.into())
             }
             Some(leg) if leg.kind == LegKind::RunDown => {
                 rotor.mirror_phase(plan.rest.of(id)).value().clone()

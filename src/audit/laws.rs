@@ -1,10 +1,10 @@
 //! The laws once more, for the auditor: other algebraic forms than those that rows are made from.
 //!
 //! * polynomial laws in Bernstein form: s is a sum of the upper Bernstein polynomials, its integral too;
-//! * all laws made of sines and ramps by their *acceleration*, in stretches, integrated three times in closed form and
-//!   scaled so that s(½) = ½: harmonic, cycloidal, modified sine and modified trapezoid are one family (a quarter sine
-//!   over b/2, a constant over c/2, a quarter cosine over d/2, b + c + d = 1: Norton, *Cam Design and Manufacturing
-//!   Handbook*, ch. 3, from memory), `scurve` is a ramp and a constant.
+//! * all others by their curvature s″ (in the cam handbooks the acceleration), in stretches, integrated three times in
+//!   closed form and scaled so that s(½) = ½: harmonic, cycloidal, modified sine and modified trapezoid are one family (a
+//!   quarter sine over b/2, a constant over c/2, a quarter cosine over d/2, b + c + d = 1: Norton, *Cam Design and
+//!   Manufacturing Handbook*, ch. 3, from memory); `scurve` is a constant and then nothing.
 //!
 //! Only the first half is written down: s(1 − u) = 1 − s(u) gives the second, and a skew stretches the two.
 
@@ -48,7 +48,7 @@ enum Half {
     Stretches(Vec<Stretch>),
 }
 
-/// A stretch of one kind of acceleration, and the state it starts from.
+/// A stretch of one kind of curvature s″, and the state it starts from.
 #[derive(Clone, Copy, Debug)]
 struct Stretch {
     from: Double,
@@ -61,10 +61,10 @@ struct Stretch {
 
 #[derive(Clone, Copy, Debug)]
 enum Kind {
-    /// From 0 to 1 in a straight line.
-    Ramp,
     /// 1 throughout.
     Constant,
+    /// 0 throughout.
+    Nothing,
     /// A quarter of a sine wave, from 0 to 1.
     SineRise,
     /// A quarter of a cosine wave, from 1 to 0.
@@ -209,10 +209,14 @@ pub(super) fn septic(w: Double, v: Double) -> Value {
     }
 }
 
+/// The motor's acceleration is s′: it rises over the share, so s″ is constant there and nothing after it.
 fn scurve(share: &Rational) -> Half {
+    if *share <= ratio(0, 1) {
+        return Half::Linear;
+    }
     Half::Stretches(stretches(&[
-        (Kind::Ramp, share.clone()),
-        (Kind::Constant, ratio(1, 2) - share),
+        (Kind::Constant, share.clone()),
+        (Kind::Nothing, ratio(1, 2) - share),
     ]))
 }
 
@@ -252,7 +256,7 @@ impl Stretch {
         }
     }
 
-    /// Slope, s and S a time h into the stretch: its acceleration integrated once, twice and three times.
+    /// Slope, s and S a time h into the stretch: its curvature integrated once, twice and three times.
     fn state_at(&self, h: Double) -> State {
         let (slope, speed, gain) = self.integrals(h);
         let State {
@@ -271,11 +275,7 @@ impl Stretch {
         let square = h.squared().scaled(0.5);
         match self.kind {
             Kind::Constant => (h, square, square * h / Double::new(3.0)),
-            Kind::Ramp => (
-                square / self.length,
-                square * h / (self.length * 3.0),
-                square.squared() / (self.length * 6.0),
-            ),
+            Kind::Nothing => (Double::ZERO, Double::ZERO, Double::ZERO),
             // A quarter wave over a length ℓ has the rate ω = π/2ℓ: with y = h/2ℓ the angle is πy, and 1/ω = 2ℓ/π.
             Kind::SineRise => {
                 let (sine, cosine, inverse) = self.wave(h);
@@ -371,6 +371,24 @@ mod tests {
     }
 
     #[test]
+    fn an_s_curve_rises_over_its_share() {
+        // By its definition: s′ rises to 1/(1 − r) over the share r, so s(r) = r/(2(1 − r)), then goes on straight.
+        for (share, n) in [(0, 8), (2, 8), (5, 8), (10, 10)] {
+            let r = f64::from(share) / 20.0;
+            let law = Curve::new(&Shape::Scurve(ratio(share.into(), 20)));
+            let got = at(law.as_ref(), n, 20).speed.leading();
+            let want = (n as f64 / 20.0 - r / 2.0) / (1.0 - r);
+            assert!((got - want).abs() < 1e-15, "share {r}: {got}, want {want}");
+        }
+        let law = Curve::new(&Shape::Scurve(ratio(1, 2)));
+        let got = at(law.as_ref(), 1, 20).speed.leading();
+        assert!(
+            (got - 2.0 / 400.0).abs() < 1e-17,
+            "2u² for a share of ½: {got}"
+        );
+    }
+
+    #[test]
     fn gain_is_the_integral_of_speed() {
         let mut laws: Vec<Shape> = [ratio(1, 2), ratio(3, 10), ratio(19, 20)]
             .iter()
@@ -383,7 +401,7 @@ mod tests {
                 })
             })
             .collect();
-        laws.extend([ratio(0, 1), ratio(1, 7), ratio(1, 2)].map(Shape::Scurve));
+        laws.extend([ratio(0, 1), ratio(1, 8), ratio(1, 2)].map(Shape::Scurve));
         laws.push(Shape::Law(Law {
             kind: LawKind::Bezier {
                 x1: ratio(1, 4),

@@ -23,7 +23,8 @@ fn clean(plan: &Plan) {
 #[test]
 fn every_law() {
     use LawKind::{
-        Cubic, Cycloidal, Harmonic, Linear, ModifiedSine, ModifiedTrapezoid, Quintic, Septic,
+        Cubic, Cycloidal, Harmonic, Linear, ModifiedSine, ModifiedTrapezoid, Quintic, Scurve,
+        Septic,
     };
     clean(&evening([Quintic, Septic, Cubic, Linear]));
     clean(&evening([
@@ -34,6 +35,8 @@ fn every_law() {
     ]));
     clean(&there_and_back(ModifiedSine, ModifiedTrapezoid));
     clean(&there_and_back(Cycloidal, Harmonic));
+    clean(&evening([Scurve, Scurve, Scurve, Scurve]));
+    clean(&there_and_back(Scurve, Scurve));
     // The four keywords of CSS Easing Functions Level 1, and the straight line with a point where x′ and y′ vanish.
     let ease = bezier(ratio(1, 4), ratio(1, 10), ratio(1, 4), whole(1));
     let ease_in = bezier(ratio(42, 100), whole(0), whole(1), whole(1));

@@ -231,6 +231,11 @@ impl Maker {
 
 /// A looped show of three cues on a geared pair, 2 ms tick, one tick of latency; laws as given.
 pub(crate) fn evening(laws: [LawKind; 4]) -> Plan {
+    evening_of(laws, [400, 137, 211, 90, 177, 301, 250])
+}
+
+/// The same with legs of these lengths in ticks.
+pub(crate) fn evening_of(laws: [LawKind; 4], ticks: [u64; 7]) -> Plan {
     let [up, second, third, back] = laws.map(law);
     let a = rotor((2, 1), 1, 4096);
     let b = rotor((3, 2), -1, 1000);
@@ -238,22 +243,27 @@ pub(crate) fn evening(laws: [LawKind; 4]) -> Plan {
     let eight = show.cue(8, -5, ratio(61, 10), second.clone());
     let deltoid = show.cue(1, -2, ratio(100, 3), second);
     let weave = show.cue(5, -4, ratio(50, 7), third);
-    show.leg(LegKind::RunUp, 0, eight, 400, 0);
-    show.leg(LegKind::Hold, 1, eight, 137, 255);
-    show.leg(LegKind::Morph, 2, deltoid, 211, 0);
-    show.leg(LegKind::Hold, 2, deltoid, 90, 128);
-    show.leg(LegKind::Morph, 3, weave, 177, 64);
-    show.leg(LegKind::Hold, 3, weave, 301, 64);
-    show.looped(4, 250, back)
+    show.leg(LegKind::RunUp, 0, eight, ticks[0], 0);
+    show.leg(LegKind::Hold, 1, eight, ticks[1], 255);
+    show.leg(LegKind::Morph, 2, deltoid, ticks[2], 0);
+    show.leg(LegKind::Hold, 2, deltoid, ticks[3], 128);
+    show.leg(LegKind::Morph, 3, weave, ticks[4], 64);
+    show.leg(LegKind::Hold, 3, weave, ticks[5], 64);
+    show.looped(4, ticks[6], back)
 }
 
 /// A show of one cue that ends at rest, 1/1024 s tick, equal motors, no gear.
 pub(crate) fn there_and_back(up: LawKind, down: LawKind) -> Plan {
+    there_and_back_of(up, down, [300, 200, 280])
+}
+
+/// The same with legs of these lengths in ticks.
+pub(crate) fn there_and_back_of(up: LawKind, down: LawKind, ticks: [u64; 3]) -> Plan {
     let a = rotor((1, 1), 1, 4096);
     let b = rotor((1, 1), -1, 16_777_216);
     let mut show = Maker::new(rig(ratio(1, 1024), ratio(3, 1000), a, b), law(up));
     let star = show.cue(2, -3, ratio(70, 3), law(LawKind::Quintic));
-    show.leg(LegKind::RunUp, 0, star, 300, 0);
-    show.leg(LegKind::Hold, 1, star, 200, 200);
-    show.run_down(2, 280, law(down))
+    show.leg(LegKind::RunUp, 0, star, ticks[0], 0);
+    show.leg(LegKind::Hold, 1, star, ticks[1], 200);
+    show.run_down(2, ticks[2], law(down))
 }
