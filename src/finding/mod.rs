@@ -116,6 +116,22 @@ impl Finding {
             count: 1,
         }
     }
+    /// Takes up another finding of the same code at the same place.
+    fn absorb(&mut self, other: Self) {
+        if self.count < MOST_MESSAGES && !self.message.contains(&other.message) {
+            self.message.push_str("; ");
+            self.message.push_str(&other.message);
+            match (&mut self.help, other.help) {
+                (Some(help), Some(more)) if !help.contains(&more) => {
+                    help.push_str("; ");
+                    help.push_str(&more);
+                }
+                (help @ None, more) => *help = more,
+                _ => {}
+            }
+        }
+        self.count += other.count;
+    }
     /// Whether it keeps the table from being written.
     #[must_use]
     pub fn is_error(&self) -> bool {
@@ -155,8 +171,11 @@ impl Finding {
     }
 }
 
+/// Messages that a merged finding keeps at most; of a cue inside `repeat` each may name a value of its own.
+const MOST_MESSAGES: u64 = 4;
+
 /// Findings in the order of the reference: errors, warnings, notes, each by place; those of one code
-/// at one place merged into the first of them, with a count.
+/// at one place merged into the first of them, with a count and with what the others say differently.
 #[must_use]
 pub fn ordered(findings: Vec<Finding>) -> Vec<Finding> {
     let mut sorted = findings;
@@ -169,7 +188,7 @@ pub fn ordered(findings: Vec<Finding>) -> Vec<Finding> {
                 if (last.severity, last.place, last.code)
                     == (finding.severity, finding.place, finding.code) =>
             {
-                last.count += finding.count;
+                last.absorb(finding);
             }
             _ => merged.push(finding),
         }

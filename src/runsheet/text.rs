@@ -150,7 +150,7 @@ fn write_cue(sheet: &Sheet<'_>, entry: &Entry<'_>, out: &mut dyn Write) -> io::R
         number.as_str()
     };
     let standing = entry.hold.map_or_else(String::new, |(_, ticks)| {
-        format!(", for {}", duration(&sheet.table_time(ticks)))
+        format!(" for {}", duration(&sheet.table_time(ticks)))
     });
     let written = printable(&cue.figure.written).into_owned();
     paragraph(

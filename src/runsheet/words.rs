@@ -130,14 +130,8 @@ pub(super) fn transition(transition: &Transition, time: &Seconds) -> String {
 
 /// What must be done before row 0, a sentence a step.
 pub(super) fn before(sheet: &Sheet<'_>) -> Vec<String> {
-    let rig = &sheet.plan.rig;
-    let marked: Vec<&str> = RotorId::BOTH
-        .iter()
-        .filter(|id| rig.rotor(**id).index.is_some())
-        .map(|id| id.name())
-        .collect();
     let rest = "Both motors at rest".to_owned();
-    match marked.as_slice() {
+    match marked(sheet).as_slice() {
         [] => vec![format!(
             "{rest}. This rig has no marks: the mirrors may stand as they like."
         )],
@@ -166,14 +160,24 @@ fn off_marks(sheet: &Sheet<'_>) -> Option<String> {
 
 /// What to do after a stop or a power loss.
 pub(super) fn after_stop(sheet: &Sheet<'_>) -> String {
-    let home = if sheet.plan.rig.knows_pose() {
-        "bring both mirrors home to their marks again"
-    } else {
-        "bring every mirror that has a mark home to it again"
+    let marked = marked(sheet);
+    let home = match marked.as_slice() {
+        [] => String::new(),
+        [one] => format!(", bring mirror {one} home to its mark again"),
+        _ => ", bring both mirrors home to their marks again".to_owned(),
     };
     format!(
-        "Wait until both motors are at rest, {home}, and start at row 0. Never go on from the middle."
+        "Wait until both motors are at rest{home}, and start at row 0. Never go on from the middle."
     )
+}
+
+/// The names of the rotors that have a mark.
+fn marked(sheet: &Sheet<'_>) -> Vec<&'static str> {
+    RotorId::BOTH
+        .iter()
+        .filter(|id| sheet.plan.rig.rotor(**id).index.is_some())
+        .map(|id| id.name())
+        .collect()
 }
 
 /// `Rotor a: 1 mirror turn = 2 motor turns`, for each geared rotor.

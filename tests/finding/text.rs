@@ -1,7 +1,7 @@
 use crate::{SHOW, place_of, rendered, too_fast};
 use insta::assert_snapshot;
 use phasewright::finding::render::{Form, MOST_PRINTED, write};
-use phasewright::finding::{Code, Finding, Place, Sources};
+use phasewright::finding::{Code, Finding, Place, Sources, ordered};
 
 /// One finding at the first `words` of a file.
 fn at(text: &str, words: &str) -> String {
@@ -203,4 +203,34 @@ fn past_a_thousand_the_rest_is_counted() {
 #[test]
 fn no_findings_are_no_text() {
     assert_eq!(rendered(Form::Text, Vec::new(), &Sources::default()), "");
+}
+
+#[test]
+fn merging_keeps_what_the_findings_say_differently() {
+    let mut sources = Sources::default();
+    let file = sources.add("harbour.show", SHOW);
+    let place = place_of(file, SHOW, "show");
+    let found = |message| Finding::new(Code::TextMissing, place, message);
+    let all = ordered(vec![
+        found("no rig").help("write one"),
+        found("no ending").help("write `loop`"),
+        found("no rig").help("write one"),
+    ]);
+    assert_eq!(all.len(), 1);
+    assert_eq!(all[0].message, "no rig; no ending");
+    assert_eq!(all[0].help.as_deref(), Some("write one; write `loop`"));
+    assert_eq!(all[0].count, 3);
+}
+
+#[test]
+fn a_cue_repeated_for_ever_keeps_a_short_message() {
+    let place = Place {
+        file: Sources::default().add("x", "x"),
+        start: 0,
+        end: 1,
+    };
+    let found = |value| Finding::new(Code::LimitSpeed, place, format!("{value} rpm"));
+    let all = ordered((0..10_000).map(found).collect());
+    assert_eq!((all.len(), all[0].count), (1, 10_000));
+    assert_eq!(all[0].message, "0 rpm; 1 rpm; 2 rpm; 3 rpm");
 }

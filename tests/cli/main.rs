@@ -1,0 +1,17 @@
+//! The built program as its users meet it: standard output, standard error and exit status of each run.
+#![allow(
+    clippy::unwrap_used,
+    clippy::expect_used,
+    clippy::indexing_slicing,
+    clippy::panic
+)]
+
+mod builder;
+mod compile;
+mod explain;
+mod inputs;
+mod pages;
+mod runsheet;
+mod streams;
+mod usage;
+mod validate;
