@@ -125,3 +125,63 @@ pub fn written(p: i64, q: i64) -> Result<Ratio, Impossible> {
     }
     Ratio::new(p, q).ok_or_else(too_large)
 }
+
+#[cfg(test)]
+mod tests {
+    use super::{Impossible, ring, ring_outside, rose, star, written};
+    use crate::exact::{ratio, whole};
+    use std::f64::consts::TAU;
+
+    #[test]
+    fn a_rose_with_equal_reaches_lies_on_its_polar_equation() {
+        // r = 2R·cos(k·angle), the definition of the rose (Grandi); angles are taken as they grow with time.
+        for (n, d) in [(5, 3), (3, 1), (1, 1), (2, 7), (10_i128, 9_i128), (0, 1)] {
+            let figure = rose(&ratio(n, d)).ok();
+            let Some(figure) = figure else {
+                unreachable!("rose {n}/{d} has small terms");
+            };
+            let (p, q) = (f64::from(figure.p()), f64::from(figure.q()));
+            #[expect(clippy::cast_precision_loss, reason = "small numbers")]
+            let k = n as f64 / d as f64;
+            for step in 0..200 {
+                let t = f64::from(step) / 200.0 * TAU;
+                let (x, y) = ((p * t).cos() + (q * t).cos(), (p * t).sin() + (q * t).sin());
+                let angle = (p + q) / 2.0 * t;
+                let r = 2.0 * (k * angle).cos();
+                assert!((x - r * angle.cos()).abs() < 1e-9, "rose {n}/{d} at {t}");
+                assert!((y - r * angle.sin()).abs() < 1e-9, "rose {n}/{d} at {t}");
+            }
+        }
+    }
+
+    #[test]
+    fn wheels_have_as_many_lobes_as_their_curves_have_cusps() {
+        // Cusps of hypo- and epicycloids, R/W = n/d in lowest terms has n (J. D. Lawrence, A Catalog of Special Plane
+        // Curves, from memory).
+        for (large, small, cusps) in [(3, 1, 3), (4, 1, 4), (5, 2, 5), (75, 28, 75), (8, 3, 8)] {
+            let lobes = |figure: Result<super::Ratio, Impossible>| figure.map(super::Ratio::lobes);
+            assert_eq!(lobes(ring(&whole(large), &whole(small))), Ok(cusps));
+            assert_eq!(lobes(ring_outside(&whole(large), &whole(small))), Ok(cusps));
+        }
+    }
+
+    #[test]
+    fn what_cannot_be_is_named() {
+        assert_eq!(
+            star(10, 4),
+            Err(Impossible::CommonFactor { points: 5, step: 2 })
+        );
+        assert_eq!(star(5, 5), Err(Impossible::Step { points: 5 }));
+        assert_eq!(ring(&whole(3), &whole(3)), Err(Impossible::WheelTooLarge));
+        assert_eq!(rose(&whole(-1)), Err(Impossible::Negative));
+        assert_eq!(written(0, 0), Err(Impossible::NotPositive));
+        assert!(matches!(
+            written(20_000, 10_000),
+            Err(Impossible::TooLarge { .. })
+        ));
+        assert_eq!(
+            star(5, 2).map(|figure| figure.to_string()),
+            Ok("2:-3".to_owned())
+        );
+    }
+}

@@ -50,7 +50,8 @@ fn token(text: &str) -> &str {
         return word;
     }
     let end = if text.starts_with('"') {
-        text.find('\n').unwrap_or(text.len())
+        let line = text.find('\n').unwrap_or(text.len());
+        text.get(..line).unwrap_or_default().trim_end().len()
     } else if text.starts_with(|sign: char| sign.is_ascii_digit() || sign == '-' || sign == '+') {
         text.char_indices()
             .skip(1)
@@ -59,7 +60,7 @@ fn token(text: &str) -> &str {
     } else {
         text.chars().next().map_or(0, char::len_utf8)
     };
-    text.get(..end).unwrap_or_default().trim_end()
+    text.get(..end).unwrap_or_default()
 }
 
 /// What a rule of the grammar stands for, and the word, where it is one.
@@ -69,7 +70,10 @@ fn describe(rule: Rule) -> String {
         Rule::text => "a text in quotes",
         Rule::name => "a name",
         Rule::figure | Rule::figure_name => "a figure",
-        Rule::number | Rule::plain => "a number",
+        Rule::plain => "a number",
+        Rule::opening => "`(`",
+        Rule::closing => "`)`",
+        Rule::equals => "`=`",
         Rule::ratio => "a ratio such as `5:-4`",
         Rule::quantity => "a number with its unit",
         Rule::duration => "a duration such as `4 s`",
@@ -100,7 +104,7 @@ fn words(expected: &[Rule]) -> Vec<String> {
             Rule::figure | Rule::figure_name => {
                 words.extend(["rose", "ring", "star", "ratio"].map(str::to_owned))
             }
-            Rule::at_least => words.push("at".to_owned()),
+            Rule::at_least | Rule::w_at => words.push("at".to_owned()),
             Rule::label => words.push("name".to_owned()),
             Rule::run => words.push("fastest".to_owned()),
             Rule::EOI
@@ -135,13 +139,75 @@ pub(super) const LAWS: [&str; 10] = [
     "bezier",
 ];
 
-/// What would have gone on, in words: "a clause (`morph`, …) or the end of the statement".
+/// A rule that only begins another → that other one, so that each thing is named once.
+fn whole_rule(rule: Rule) -> Rule {
+    match rule {
+        Rule::w_morph => Rule::morph,
+        Rule::w_hold => Rule::hold,
+        Rule::w_rate => Rule::rate,
+        Rule::w_lead => Rule::lead,
+        Rule::w_land => Rule::land,
+        Rule::w_spin => Rule::spin,
+        Rule::w_beam => Rule::beam,
+        Rule::w_name => Rule::label,
+        Rule::w_skew => Rule::skew,
+        Rule::law_name | Rule::bezier | Rule::w_bezier => Rule::law,
+        Rule::w_rose
+        | Rule::w_ring
+        | Rule::w_star
+        | Rule::w_ratio
+        | Rule::rose
+        | Rule::ring
+        | Rule::star
+        | Rule::ratio_form
+        | Rule::figure_name => Rule::figure,
+        Rule::number => Rule::quantity,
+        other => other,
+    }
+}
+
+/// What the grammar would have gone on with: each thing once, and nothing that is part of another.
+fn expected_rules(error: &Error<Rule>) -> Vec<Rule> {
+    let ErrorVariant::ParsingError { positives, .. } = &error.variant else {
+        return Vec::new();
+    };
+    let mut rules: Vec<Rule> = Vec::new();
+    for rule in positives.iter().copied().map(whole_rule) {
+        if !rules.contains(&rule) {
+            rules.push(rule);
+        }
+    }
+    let clause = rules.contains(&Rule::hold);
+    let figure = rules.contains(&Rule::figure);
+    rules.retain(|rule| match rule {
+        // A duration may go on with another number, and a figure may be a ratio: no news to anyone.
+        Rule::quantity | Rule::duration => !clause && !positives.contains(&Rule::EOI),
+        Rule::ratio => !figure,
+        _ => true,
+    });
+    if clause && !rules.contains(&Rule::EOI) && !rules.contains(&Rule::figure) {
+        rules.push(Rule::EOI);
+    }
+    rules
+}
+
+/// What would have gone on, in words: "a clause such as `hold 5 s` or the end of the statement".
 fn expectation(expected: &[Rule]) -> String {
-    let clauses = CLAUSES.iter().all(|one| expected.contains(one));
+    let options = [
+        Rule::law,
+        Rule::w_at,
+        Rule::at_least,
+        Rule::skew,
+        Rule::w_dark,
+        Rule::w_lit,
+    ];
+    let clause = expected.contains(&Rule::hold);
     let mut said: Vec<String> = Vec::new();
     for rule in expected {
-        let text = if clauses && CLAUSES.contains(rule) {
-            "a clause of the cue".to_owned()
+        let text = if CLAUSES.contains(rule) {
+            "a clause such as `hold 5 s`".to_owned()
+        } else if (clause || expected.contains(&Rule::skew)) && options.contains(rule) {
+            "a law or another option of `morph`".to_owned()
         } else {
             describe(*rule)
         };
@@ -149,6 +215,7 @@ fn expectation(expected: &[Rule]) -> String {
             said.push(text);
         }
     }
+    said.sort_by_key(|text| text == "the end of the statement");
     one_of(&said)
 }
 
@@ -158,23 +225,21 @@ pub(super) fn syntax(reader: &mut Reader<'_>, span: Span, error: &Error<Rule>) -
     let at = match error.location {
         InputLocation::Pos(at) | InputLocation::Span((at, _)) => at,
     };
-    let expected: &[Rule] = match &error.variant {
-        ErrorVariant::ParsingError { positives, .. } => positives,
-        ErrorVariant::CustomError { .. } => &[],
-    };
+    let expected = expected_rules(error);
+    let expected = expected.as_slice();
     let rest = statement.get(at..).unwrap_or_default();
     let found = token(rest);
     let start = span.start as usize + at;
     let place = reader.findings.place(Span::new(start, start + found.len()));
     let before = statement.get(..at).unwrap_or_default();
     let said = if found.is_empty() {
-        "the statement ends".to_owned()
+        "the end of the statement".to_owned()
     } else {
-        format!("here stands `{}`", clip(found))
+        format!("`{}`", clip(found))
     };
     let message = match expectation(expected) {
-        nothing if nothing.is_empty() => format!("this does not read: {said}"),
-        expectation => format!("{expectation} belongs here, but {said}"),
+        nothing if nothing.is_empty() => format!("this does not read: found {said}"),
+        expectation => format!("expected {expectation}, found {said}"),
     };
     let help = hint(before, found, expected).or_else(|| {
         let words = words(expected);
@@ -187,10 +252,24 @@ pub(super) fn syntax(reader: &mut Reader<'_>, span: Span, error: &Error<Rule>) -
     Finding::new(Code::TextSyntax, place, message).help_if(help)
 }
 
+/// Whether the last sign of `text` is a comma, comments and blank lines after it aside.
+fn ends_in_comma(text: &str) -> bool {
+    text.lines()
+        .rev()
+        .map(|line| {
+            line.split_once('#')
+                .map_or(line, |(line, _)| line)
+                .trim_end()
+        })
+        .find(|line| !line.is_empty())
+        .is_some_and(|line| line.ends_with(','))
+}
+
 /// Advice for slips that are easy to make.
 fn hint(before: &str, found: &str, expected: &[Rule]) -> Option<String> {
     let clause = expected.contains(&Rule::hold);
-    let after_comma = before.trim_end().ends_with(',');
+    let figure = expected.contains(&Rule::figure);
+    let after_comma = ends_in_comma(before);
     let help = match found {
         "" if after_comma => {
             "a statement goes on in the next line after a comma: take the comma away"
@@ -211,19 +290,26 @@ fn hint(before: &str, found: &str, expected: &[Rule]) -> Option<String> {
         "dark" | "lit" | "skew" | "at" if clause => {
             return Some(format!("`{found}` belongs to `morph`, behind its duration"));
         }
-        "dark" | "lit" | "skew" if expected.contains(&Rule::EOI) => {
-            return Some(format!(
-                "`{found}` does not go here: run-up and run-down are always dark, from standstill or to it"
-            ));
+        "dark" | "lit" if expected.contains(&Rule::EOI) => {
+            "run-up and run-down are always dark, no need to say so"
+        }
+        "skew" if expected.contains(&Rule::EOI) => "run-up and run-down take a law without `skew`",
+        number
+            if clause && after_comma && number.starts_with(|sign: char| sign.is_ascii_digit()) =>
+        {
+            "a sum of durations has no comma inside: `1 min 30 s`"
+        }
+        number
+            if figure && number.starts_with(|sign: char| sign.is_ascii_digit() || sign == '-') =>
+        {
+            "a ratio is two whole numbers without blanks, with `:` and a plain `-`: `5:-4`"
         }
         law if clause && LAWS.contains(&law) => {
             return Some(format!(
                 "`{law}` belongs to `morph`, behind its duration, and only once"
             ));
         }
-        "morph" | "hold" | "rate" | "lead" | "land" | "spin" | "beam" | "name"
-            if expected.contains(&Rule::figure) =>
-        {
+        "morph" | "hold" | "rate" | "lead" | "land" | "spin" | "beam" | "name" if figure => {
             "a cue names its figure first: `cue deltoid hold 5 s`"
         }
         "cue" | "repeat" | "play" | "part" | "figure" | "loop" | "run-down" | "usual"

@@ -2,6 +2,7 @@
 
 use super::span::Span;
 use crate::finding::{Code, FileId, Finding, Place};
+use std::collections::BTreeMap;
 
 /// How many findings of one file are kept; a file with more is no script, and reading it stops.
 pub(super) const MOST_FINDINGS: usize = 10_000;
@@ -59,12 +60,51 @@ impl Findings {
         .help("keep one of the two");
         self.push(finding);
     }
+    /// How many there are.
+    pub(super) fn len(&self) -> usize {
+        self.list.len()
+    }
+    /// Forgets all past the first `len`: what was found in a stretch that is not of this language.
+    pub(super) fn truncate(&mut self, len: usize) {
+        self.list.truncate(len);
+    }
     /// Whether more were found than are kept.
     pub(super) fn over(&self) -> bool {
         self.over
     }
+    /// Several things missing at one place become one finding that names them all: findings of one code at one place are
+    /// merged later on, and only the first would be seen.
+    fn join_missing(&mut self) {
+        let mut first: BTreeMap<Place, usize> = BTreeMap::new();
+        let mut joined: Vec<Finding> = Vec::with_capacity(self.list.len());
+        for finding in self.list.drain(..) {
+            let known = first.get(&finding.place).copied();
+            let earlier = known.and_then(|index| joined.get_mut(index));
+            match earlier {
+                Some(earlier)
+                    if finding.code == Code::TextMissing && earlier.message != finding.message =>
+                {
+                    earlier.message = format!("{}; {}", earlier.message, finding.message);
+                    earlier.help = match (earlier.help.take(), finding.help) {
+                        (Some(one), Some(two)) if !one.contains(&two) => {
+                            Some(format!("{one}; {two}"))
+                        }
+                        (one, two) => one.or(two),
+                    };
+                }
+                _ => {
+                    if finding.code == Code::TextMissing {
+                        first.insert(finding.place, joined.len());
+                    }
+                    joined.push(finding);
+                }
+            }
+        }
+        self.list = joined;
+    }
     /// All of them; the first says so where there were more than are kept.
     pub(super) fn finish(mut self) -> Vec<Finding> {
+        self.join_missing();
         if self.over {
             let start = Span::new(0, 0);
             let finding = Finding::new(

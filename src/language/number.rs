@@ -41,6 +41,11 @@ pub(super) fn read(text: &str) -> Result<Rational, Problem> {
         Some(rest) => (true, rest),
         None => (false, text.strip_prefix('+').unwrap_or(text)),
     };
+    // Most numbers are short and whole, and within every limit.
+    if body.len() <= 9 && body.bytes().all(|sign| sign.is_ascii_digit()) {
+        let units = integer(body)?;
+        return Ok(whole(if negative { -units } else { units }));
+    }
     let size = match body.split_once('/') {
         Some((upper, lower)) => {
             let (upper, lower) = (integer(upper)?, integer(lower)?);

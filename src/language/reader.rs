@@ -64,8 +64,9 @@ impl<'t> Reader<'t> {
     }
     /// Where a pair stands in the file.
     pub(super) fn span(&self, pair: &Pair<'_, Rule>) -> Span {
-        let span = pair.as_span();
-        Span::new(self.base + span.start(), self.base + span.end())
+        // A repetition that ends takes the blanks with it that its next item would have followed.
+        let start = self.base + pair.as_span().start();
+        Span::new(start, start + pair.as_str().trim_end().len())
     }
     /// The value of a pair `number`, `plain` or one term of a ratio that stands at `span`.
     pub(super) fn number_at(&mut self, span: Span) -> Option<Rational> {
@@ -137,7 +138,7 @@ impl<'t> Reader<'t> {
             Some(unit) if unit.kind == kind => return Some(unit.worth()),
             Some(unit) => (
                 format!(
-                    "`{}` is the unit of {}, here stands {}",
+                    "`{}` is a unit of {}, and {} is needed here",
                     unit.text,
                     unit.kind.noun(),
                     kind.noun()

@@ -10,7 +10,7 @@ use super::span::{Span, Spanned};
 use super::tree::{Clause, CueNode, FigureDefinition, Morph, PartNode, Statement};
 use super::unfold::{Part, Step, unfold};
 use super::{MOST_DAYS, merge};
-use crate::exact::{Seconds, whole};
+use crate::exact::Seconds;
 use crate::figure::Figure;
 use crate::finding::{Code, Finding};
 use crate::show::{Ending, Hold, Length, Show, Transition, WrittenCue};
@@ -341,7 +341,7 @@ impl<'s> Resolver<'s> {
         };
         let written = node.figure.span.of(text);
         let figure = Figure {
-            written: written.split_whitespace().collect::<Vec<_>>().join(" "),
+            written: one_blank(written),
             form,
             ratio,
         };
@@ -420,10 +420,16 @@ impl<'s> Resolver<'s> {
         const PICOSECONDS_A_DAY: u128 = 86_400_000_000_000_000;
         let most = u128::from(MOST_DAYS) * PICOSECONDS_A_DAY;
         let picoseconds = |time: &Seconds| -> u128 {
-            let scaled = (time.value() * whole(1_000_000_000_000))
-                .floor()
-                .to_integer();
-            scaled.to_u128().unwrap_or(0).min(2 * most)
+            let (upper, lower) = (time.value().numer(), time.value().denom());
+            let scaled = upper
+                .to_u128()
+                .zip(lower.to_u128())
+                .and_then(|(upper, lower)| {
+                    upper.checked_mul(1_000_000_000_000)?.checked_div(lower)
+                });
+            // Past these sizes a sum of durations is far longer than any show, or so finely divided that the limits of
+            // numbers have been passed long before.
+            scaled.unwrap_or(u128::MAX).min(2 * most)
         };
         let length = |transition: &Transition| match &transition.length {
             Length::Given(time) => picoseconds(time),
@@ -485,4 +491,13 @@ impl<'s> Resolver<'s> {
 /// Whether a broken statement may have been one that plays a cue.
 fn may_play(word: Option<&str>) -> bool {
     matches!(word, None | Some("cue" | "play" | "repeat"))
+}
+
+/// `text` with one blank for every run of them.
+fn one_blank(text: &str) -> String {
+    if text.contains(char::is_whitespace) {
+        text.split_whitespace().collect::<Vec<_>>().join(" ")
+    } else {
+        text.to_owned()
+    }
 }

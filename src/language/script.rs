@@ -55,6 +55,9 @@ const STATEMENTS: [(&str, Rule, bool, bool); 11] = [
     ("run-down", Rule::run_down_line, false, false),
 ];
 
+/// What begins a statement of a rig, and none of a show.
+const RIG_WORDS: [&str; 5] = ["rotor", "controller", "laser", "viewing", "projection"];
+
 /// Reads the text of a show; every statement that does not read is reported and taken out.
 #[must_use]
 pub fn parse_show(file: FileId, text: &str) -> (ShowScript, Vec<Finding>) {
@@ -66,7 +69,6 @@ pub fn parse_show(file: FileId, text: &str) -> (ShowScript, Vec<Finding>) {
     };
     let mut parser = Parser {
         reader: Reader::new(file, text),
-        cues: 0,
         stopped: false,
     };
     if super::too_large(text, &mut parser.reader.findings) {
@@ -74,15 +76,36 @@ pub fn parse_show(file: FileId, text: &str) -> (ShowScript, Vec<Finding>) {
         return (script, parser.reader.findings.finish());
     }
     let events = outline(text, byte_order_mark(text), &mut parser.reader.findings);
-    script.statements = parser.block(&mut events.iter(), false);
+    if let Some(span) = one_too_many(text, &events) {
+        parser.stopped = true;
+        parser.reader.findings.add(
+            Code::TextTooMuch,
+            span,
+            format!("this is more than {MOST_CUES} cues; the show is not read"),
+        );
+    } else {
+        script.statements = parser.block(&mut events.iter(), false);
+    }
     script.stopped = parser.stopped || parser.reader.findings.over();
     script.text = text.to_owned();
     (script, parser.reader.findings.finish())
 }
 
+/// The first `cue` past the most that a show has.
+fn one_too_many(text: &str, events: &[Event]) -> Option<Span> {
+    let cues = events.iter().filter_map(|event| match event {
+        Event::Statement { span, .. } => {
+            let start = span.start as usize;
+            let word = Span::new(start, start + first_word(span.of(text)).len());
+            (word.of(text) == "cue").then_some(word)
+        }
+        Event::Close => None,
+    });
+    cues.skip(MOST_CUES).next()
+}
+
 struct Parser<'t> {
     reader: Reader<'t>,
-    cues: usize,
     stopped: bool,
 }
 
@@ -136,7 +159,11 @@ impl<'t> Parser<'t> {
         let Some((name, rule, opens, inside)) = STATEMENTS.iter().find(|(name, ..)| *name == found)
         else {
             let meant = self.unknown(head, found);
+            let known = self.reader.findings.len();
             let body = body(self).unwrap_or_default();
+            if RIG_WORDS.contains(&found) {
+                self.reader.findings.truncate(known);
+            }
             match meant {
                 Some(name) => self.not_read(head, name, body, into),
                 None => into.push(broken(span, None, body)),
@@ -211,7 +238,7 @@ impl<'t> Parser<'t> {
             (_, "morph" | "hold" | "rate" | "lead" | "land" | "spin" | "beam" | "name") => {
                 "clauses stand in the line of their cue; after a comma a line goes on in the next one".to_owned()
             }
-            (_, "rotor" | "controller" | "laser" | "viewing" | "projection") => {
+            (_, rig) if RIG_WORDS.contains(&rig) => {
                 "this belongs in a rig file (`*.rig`)".to_owned()
             }
             (Some(near), _) => format!("did you mean `{near}`?"),
@@ -289,7 +316,8 @@ impl<'t> Parser<'t> {
             Rule::rig_line => Statement::Rig(reader.quoted(inner.next()?)),
             Rule::figure_line => {
                 let name = reader.span(&inner.next()?);
-                let figure = figures::read(reader, inner.next()?);
+                let figure = inner.find(|inner| inner.as_rule() == Rule::figure)?;
+                let figure = figures::read(reader, figure);
                 Statement::Figure(Box::new(FigureDefinition { name, figure }))
             }
             Rule::usual_line => {
@@ -315,16 +343,6 @@ impl<'t> Parser<'t> {
                 Statement::Loop(Box::new(Spanned::new(clause, span)))
             }
             Rule::cue_line => {
-                self.cues += 1;
-                if self.cues > MOST_CUES {
-                    self.stopped = true;
-                    reader.findings.add(
-                        Code::TextTooMuch,
-                        head.word,
-                        format!("more than {MOST_CUES} cues; the show is not read any further"),
-                    );
-                    return None;
-                }
                 let figure = figures::read(reader, inner.next()?);
                 let clauses = clauses::read(reader, inner, Owner::Cue);
                 Statement::Cue(Box::new(CueNode {

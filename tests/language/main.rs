@@ -9,3 +9,5 @@
 
 mod cases;
 mod dump;
+mod hostile;
+mod properties;

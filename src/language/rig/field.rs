@@ -28,24 +28,24 @@ pub(super) enum Scope {
 }
 
 impl Scope {
-    /// "in a rotor".
+    /// "field of a rotor".
     pub(super) fn text(self) -> &'static str {
         match self {
-            Scope::Top => "of a rig",
-            Scope::Rotor => "of a rotor",
-            Scope::Laser => "of a laser",
-            Scope::Controller => "of a controller",
-            Scope::Viewing => "of viewing",
+            Scope::Top => "statement of a rig",
+            Scope::Rotor => "field of a rotor",
+            Scope::Laser => "field of a laser",
+            Scope::Controller => "field of a controller",
+            Scope::Viewing => "field of viewing",
         }
     }
-    /// The block's head, as one writes it.
+    /// Where its fields belong.
     pub(super) fn block(self) -> &'static str {
         match self {
-            Scope::Top => "the top of the file",
-            Scope::Rotor => "`rotor NAME { … }`",
-            Scope::Laser => "`laser { … }`",
-            Scope::Controller => "`controller { … }`",
-            Scope::Viewing => "`viewing { … }`",
+            Scope::Top => "outside all blocks",
+            Scope::Rotor => "inside `rotor NAME { … }`",
+            Scope::Laser => "inside `laser { … }`",
+            Scope::Controller => "inside `controller { … }`",
+            Scope::Viewing => "inside `viewing { … }`",
         }
     }
 }

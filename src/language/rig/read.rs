@@ -321,20 +321,20 @@ fn unknown(reader: &mut Reader<'_>, scope: Scope, span: Span, word: Span) {
         .collect();
     let elsewhere = FIELDS.iter().find(|field| field.word == found);
     let help = match (elsewhere, reader.nearest.find(found, words.iter().copied())) {
-        (Some(field), _) => format!("`{found}` belongs into {}", field.scope.block()),
+        (Some(field), _) => format!("`{found}` belongs {}", field.scope.block()),
         (None, Some(near)) => format!("did you mean `{near}`?"),
         (None, None) if matches!(found, "cue" | "show" | "usual" | "figure" | "part") => {
             "this belongs in a show file (`*.show`)".to_owned()
         }
         (None, None) => {
             let words: Vec<String> = words.iter().map(|word| format!("`{word}`")).collect();
-            format!("here stands one of {}", one_of(&words))
+            format!("what may stand here: {}", one_of(&words))
         }
     };
     reader.findings.add_help(
         Code::TextSyntax,
         word,
-        format!("`{}` is no field {}", clip(found), scope.text()),
+        format!("`{}` is no {}", clip(found), scope.text()),
         help,
     );
 }

@@ -119,6 +119,14 @@ fn only_of_projection(reader: &mut Reader<'_>, block: &RotorBlock, projection: O
     }
 }
 
+/// "a, b and c".
+fn all_of(words: &[String]) -> String {
+    match words.split_last() {
+        Some((last, rest)) if !rest.is_empty() => format!("{} and {last}", rest.join(", ")),
+        _ => words.join(""),
+    }
+}
+
 /// One rotor's fields, `like` done.
 struct Work<'f> {
     file: FileId,
@@ -132,35 +140,45 @@ impl Work<'_> {
     fn entry(&self, key: &str) -> Option<&Entry> {
         self.fields.get(key)
     }
-    /// The value of a field that must be there, if it is and reads; a missing one is reported.
-    fn required(&self, reader: &mut Reader<'_>, key: &str, example: &str) -> Option<&Value> {
-        let entry = self.entry(key);
-        if entry.is_none() && !self.quiet {
-            reader.findings.add_help(
-                Code::TextMissing,
-                self.head,
-                format!("this rotor has no `{key}`"),
-                format!("e.g. `{example}`"),
-            );
+    /// Reports which of the required fields are missing.
+    fn missing(&self, reader: &mut Reader<'_>, projection: Option<Projection>) {
+        let required = [
+            ("top-speed", "12000 rpm"),
+            ("acceleration", "6000 rpm/s"),
+            ("counts", "4096"),
+            ("draws", "counter-clockwise"),
+        ];
+        let circular = projection == Some(Projection::Circular);
+        let missing: Vec<_> = required
+            .iter()
+            .filter(|(key, _)| self.entry(key).is_none() && (circular || *key != "draws"))
+            .collect();
+        if missing.is_empty() || self.quiet {
+            return;
         }
-        entry.and_then(|entry| entry.value.as_ref())
+        let keys: Vec<String> = missing.iter().map(|(key, _)| format!("`{key}`")).collect();
+        let examples: Vec<String> = missing
+            .iter()
+            .map(|(key, value)| format!("`{key} {value}`"))
+            .collect();
+        reader.findings.add_help(
+            Code::TextMissing,
+            self.head,
+            format!("this rotor lacks {}", all_of(&keys)),
+            format!("e.g. {}", examples.join(", ")),
+        );
     }
 
     fn rotor(&self, reader: &mut Reader<'_>, projection: Option<Projection>) -> Option<Rotor> {
-        self.required(reader, "top-speed", "top-speed 12000 rpm");
-        self.required(reader, "acceleration", "acceleration 6000 rpm/s");
-        let counts = match self.required(reader, "counts", "counts 4096") {
+        self.missing(reader, projection);
+        let value = |key| self.entry(key).and_then(|entry| entry.value.as_ref());
+        let counts = match value("counts") {
             Some(Value::Counts(counts)) => Some(*counts),
             _ => None,
         };
-        let sense = match projection {
-            Some(Projection::Circular) => {
-                match self.required(reader, "draws", "draws counter-clockwise") {
-                    Some(Value::Word(Rule::w_clockwise)) => Some(-1),
-                    Some(_) => Some(1),
-                    None => None,
-                }
-            }
+        let sense = match (projection, value("draws")) {
+            (Some(Projection::Circular), None) => None,
+            (Some(Projection::Circular), Some(Value::Word(Rule::w_clockwise))) => Some(-1),
             _ => Some(1),
         };
         self.torque_needs(reader);
@@ -207,21 +225,28 @@ impl Work<'_> {
         let Some(entry) = self.entry("torque") else {
             return;
         };
-        if matches!(entry.value, Some(Value::Nothing)) {
+        if !matches!(entry.value, Some(Value::Curve(_))) || self.quiet {
             return;
         }
-        for (key, example) in [("drag", "drag 1.1 mN m"), ("inertia", "inertia 12 g cm^2")] {
-            if self.entry(key).is_none() && !self.quiet {
-                let finding = Finding::new(
-                    Code::TextMissing,
-                    reader.findings.place(self.head),
-                    format!("this rotor has a `torque` curve but no `{key}`"),
-                )
-                .also(reader.findings.place(entry.span), "the torque curve")
-                .help(format!("e.g. `{example}`, or `torque none`"));
-                reader.findings.push(finding);
-            }
+        let missing: Vec<String> = ["drag", "inertia"]
+            .iter()
+            .filter(|key| self.entry(key).is_none())
+            .map(|key| format!("`{key}`"))
+            .collect();
+        if missing.is_empty() {
+            return;
         }
+        let finding = Finding::new(
+            Code::TextMissing,
+            reader.findings.place(self.head),
+            format!(
+                "this rotor has a torque curve, but lacks {}",
+                all_of(&missing)
+            ),
+        )
+        .also(reader.findings.place(entry.span), "the torque curve")
+        .help("e.g. `drag 1.1 mN m`, `inertia 12 g cm^2`, or `torque none`");
+        reader.findings.push(finding);
     }
 
     fn gear(&self) -> Stated<Gear> {
