@@ -127,6 +127,10 @@ pub fn written(p: i64, q: i64) -> Result<Ratio, Impossible> {
 }
 
 #[cfg(test)]
+#[allow(
+    clippy::disallowed_methods,
+    reason = "checks against a definition, far from any output"
+)]
 mod tests {
     use super::{Impossible, ring, ring_outside, rose, star, written};
     use crate::exact::{ratio, whole};

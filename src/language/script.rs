@@ -93,7 +93,7 @@ pub fn parse_show(file: FileId, text: &str) -> (ShowScript, Vec<Finding>) {
 
 /// The first `cue` past the most that a show has.
 fn one_too_many(text: &str, events: &[Event]) -> Option<Span> {
-    let cues = events.iter().filter_map(|event| match event {
+    let mut cues = events.iter().filter_map(|event| match event {
         Event::Statement { span, .. } => {
             let start = span.start as usize;
             let word = Span::new(start, start + first_word(span.of(text)).len());
@@ -101,7 +101,7 @@ fn one_too_many(text: &str, events: &[Event]) -> Option<Span> {
         }
         Event::Close => None,
     });
-    cues.skip(MOST_CUES).next()
+    cues.nth(MOST_CUES)
 }
 
 struct Parser<'t> {

@@ -148,7 +148,7 @@ impl Counts<'_> {
                     findings.add_help(
                         Code::TextTooMuch,
                         *span,
-                        format!("{once} cues {times} times are more than {MOST_CUES} cues"),
+                        format!("{once} × {times} cues are more than the {MOST_CUES} that a show may have"),
                         format!("`repeat {most}` is the most here"),
                     );
                     return None;
