@@ -17,3 +17,4 @@ mod lissajous;
 mod optimum;
 mod practice;
 mod support;
+mod table;
