@@ -27,18 +27,14 @@ fn every_example_show_validates_without_errors() {
 }
 
 #[test]
-fn every_example_show_compiles_to_every_form() {
+fn every_example_show_compiles() {
     let folder = tempfile::tempdir().unwrap();
     for show in examples("show") {
-        for form in ["csv", "json"] {
-            let table = folder.path().join(format!("table.{form}"));
-            let output = run(&["compile", &show, "-o", table.to_str().unwrap()]);
-            assert!(output.status.success(), "{show}\n{}", said(&output));
-            assert!(
-                table.metadata().unwrap().len() > 1000,
-                "{show} gives a table"
-            );
-        }
+        let table = folder.path().join("table.csv");
+        let output = run(&["compile", &show, "-o", table.to_str().unwrap()]);
+        assert!(output.status.success(), "{show}\n{}", said(&output));
+        let size = table.metadata().unwrap().len();
+        assert!(size > 1000, "{show} gives a table");
     }
 }
 

@@ -24,6 +24,10 @@ fn geometry(tilt: [f64; 2], incidence: f64, spacing: f64, throw: f64) -> Geometr
 /// r = d − 2(d·n)n: Hecht, *Optics*; Pharr et al., *Physically Based Rendering* (both from memory). The three examples are
 /// worked by hand.
 #[test]
+#[allow(
+    clippy::approx_constant,
+    reason = "published digits, which happen to be those of a constant"
+)]
 fn reflection_follows_the_law() {
     let (sin, cos) = 3_f64.to_radians().sin_cos();
     let cases = [
