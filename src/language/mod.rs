@@ -15,6 +15,7 @@ mod figures;
 mod findings;
 mod grammar;
 mod law;
+mod length;
 mod merge;
 mod names;
 mod nearest;

@@ -9,12 +9,10 @@ use super::script::ShowScript;
 use super::span::{Span, Spanned};
 use super::tree::{Clause, CueNode, FigureDefinition, Morph, PartNode, Statement};
 use super::unfold::{Part, Step, unfold};
-use super::{MOST_DAYS, merge};
-use crate::exact::Seconds;
+use super::{length::too_long, merge};
 use crate::figure::Figure;
 use crate::finding::{Code, Finding};
-use crate::show::{Ending, Hold, Length, Show, Transition, WrittenCue};
-use num_traits::ToPrimitive;
+use crate::show::{Ending, Show, WrittenCue};
 use std::collections::BTreeMap;
 
 /// Resolves a show; a cue with an error becomes [`WrittenCue::Broken`] and takes out only itself.
@@ -123,7 +121,9 @@ impl<'s> Resolver<'s> {
             }
             None => run_transition(None, start),
         };
-        self.check_length(&show);
+        if let Some(finding) = too_long(&show) {
+            self.findings.push(finding);
+        }
         show
     }
 
@@ -248,7 +248,7 @@ impl<'s> Resolver<'s> {
         usual: &Usual<'s>,
     ) -> Vec<Step> {
         let mut steps = Vec::new();
-        let mut ended = None;
+        let mut ended = false;
         for statement in statements {
             let mut step = None;
             match statement {
@@ -279,27 +279,30 @@ impl<'s> Resolver<'s> {
                     }
                     steps.push(Step::Repeat(1, node.span, body));
                 }
-                Statement::Loop(_) | Statement::RunDown(_) => ended = ended.or(Some(statement)),
+                Statement::Loop(_) | Statement::RunDown(_) => ended = true,
                 _ => {}
             }
-            match (step, ended) {
-                (Some((_, span)), Some(_)) if top => {
-                    let word = self.word(span);
-                    self.findings.add_help(
-                        Code::TextSyntax,
-                        word,
-                        format!(
-                            "this `{}` stands after the ending",
-                            word.of(&self.script.text)
-                        ),
-                        "move it before the ending; only definitions may come after it",
-                    );
-                }
-                (Some((step, _)), _) => steps.push(step),
-                (None, _) => {}
+            let Some((step, span)) = step else { continue };
+            if ended && top {
+                self.after_ending(span);
+            } else {
+                steps.push(step);
             }
         }
         steps
+    }
+
+    fn after_ending(&mut self, span: Span) {
+        let word = self.word(span);
+        self.findings.add_help(
+            Code::TextSyntax,
+            word,
+            format!(
+                "this `{}` stands after the ending",
+                word.of(&self.script.text)
+            ),
+            "move it before the ending; only definitions may come after it",
+        );
     }
 
     fn push_cue(&mut self, cue: WrittenCue, span: Span) -> Step {
@@ -409,81 +412,6 @@ impl<'s> Resolver<'s> {
                 "the show has no ending",
                 "write `loop` or `run-down fastest` as its last statement",
             );
-        }
-    }
-
-    /// Reports the cue with which the written durations come to more than a show may last.
-    ///
-    /// Sums are of whole picoseconds, each duration rounded down: exact for every decimal duration down to 10⁻¹² s, and never
-    /// more than 10⁻⁶ s below in a million cues, so no show that fits is refused. The plan checks what it makes of them.
-    fn check_length(&mut self, show: &Show) {
-        const PICOSECONDS_A_DAY: u128 = 86_400_000_000_000_000;
-        let most = u128::from(MOST_DAYS) * PICOSECONDS_A_DAY;
-        let picoseconds = |time: &Seconds| -> u128 {
-            let (upper, lower) = (time.value().numer(), time.value().denom());
-            let scaled = upper
-                .to_u128()
-                .zip(lower.to_u128())
-                .and_then(|(upper, lower)| {
-                    upper.checked_mul(1_000_000_000_000)?.checked_div(lower)
-                });
-            // Past these sizes a sum of durations is far longer than any show, or so finely divided that the limits of
-            // numbers have been passed long before.
-            scaled.unwrap_or(u128::MAX).min(2 * most)
-        };
-        let length = |transition: &Transition| match &transition.length {
-            Length::Given(time) => picoseconds(time),
-            Length::Fastest { at_least } => at_least.as_ref().map_or(0, picoseconds),
-        };
-        let times: Vec<(u128, u128, bool)> = show
-            .cues
-            .iter()
-            .map(|cue| match cue {
-                WrittenCue::Broken(_) => (0, 0, false),
-                WrittenCue::Good(cue) => match &cue.hold {
-                    Hold::For(time) => (length(&cue.morph), picoseconds(time), false),
-                    Hold::Until(time) => (length(&cue.morph), picoseconds(time), true),
-                },
-            })
-            .collect();
-        let run_up = length(&show.run_up);
-        let mut sum = run_up;
-        let too_long = |place| {
-            Finding::new(
-                Code::TextTooMuch,
-                place,
-                format!("with this the show lasts longer than {MOST_DAYS} days"),
-            )
-            .help("let it be shorter and end in `loop`, which goes on for ever")
-        };
-        for (number, index) in show.order.iter().enumerate() {
-            let Some((morph, hold, until)) = times.get(*index as usize) else {
-                continue;
-            };
-            sum += if number == 0 { 0 } else { *morph };
-            sum = if *until {
-                sum.max(run_up + hold)
-            } else {
-                sum + hold
-            };
-            if sum > most
-                && let Some(WrittenCue::Good(cue)) = show.cues.get(*index as usize)
-            {
-                let place = if *morph > *hold {
-                    cue.morph.place
-                } else {
-                    cue.hold_place
-                };
-                return self.findings.push(too_long(place));
-            }
-        }
-        let last = match &show.ending {
-            Some(Ending::Loop { morph, .. }) => morph,
-            Some(Ending::RunDown(run_down)) => run_down,
-            None => return,
-        };
-        if sum + length(last) > most {
-            self.findings.push(too_long(last.place));
         }
     }
 }

@@ -183,17 +183,7 @@ impl<'t> Parser<'t> {
         // Before the block is read: pairs know their place in their own statement only.
         let read = pair.and_then(|pair| self.statement(*rule, pair, head));
         let block = body(self);
-        if !failed && *opens != block.is_some() {
-            self.wrong_block(head, name, *opens);
-        }
-        if *opens && block.as_ref().is_some_and(Vec::is_empty) && !self.stopped {
-            self.reader.findings.add_help(
-                Code::TextMissing,
-                word,
-                format!("the block of this `{name}` is empty"),
-                "put a `cue` into it, or take it away",
-            );
-        }
+        self.check_block(head, name, (!failed, *opens), block.as_deref());
         let Some(mut statement) = read else {
             return self.not_read(head, name, block.unwrap_or_default(), into);
         };
@@ -206,6 +196,8 @@ impl<'t> Parser<'t> {
                 into.push(broken(span, Some(name), block));
                 return;
             }
+            // What it would have repeated is not known.
+            (Statement::Repeat(repeat), None) => repeat.body.push(broken(span, None, Vec::new())),
             (_, None) => {}
         }
         into.push(statement);
@@ -256,7 +248,25 @@ impl<'t> Parser<'t> {
         near
     }
 
-    fn wrong_block(&mut self, head: Head, name: &str, opens: bool) {
+    /// Reports a block that is missing, empty or does not belong to a statement; `(reads, opens)` says whether the statement reads and has one.
+    fn check_block(
+        &mut self,
+        head: Head,
+        name: &str,
+        (reads, opens): (bool, bool),
+        block: Option<&[Statement]>,
+    ) {
+        if opens && block.is_some_and(<[_]>::is_empty) && !self.stopped {
+            self.reader.findings.add_help(
+                Code::TextMissing,
+                head.word,
+                format!("the block of this `{name}` is empty"),
+                "put a `cue` into it, or take it away",
+            );
+        }
+        if !reads || opens == block.is_some() {
+            return;
+        }
         if opens {
             let end = head.span.end as usize;
             self.reader.findings.add_help(
@@ -333,13 +343,11 @@ impl<'t> Parser<'t> {
                 Statement::RunDown(Box::new(Spanned::new(morph, span)))
             }
             Rule::loop_line => {
-                let clause = match inner.next().filter(|pair| pair.as_rule() == Rule::morph) {
-                    None => Clause::Absent,
-                    Some(morph) => {
-                        let at = reader.span(&morph);
-                        Clause::read(clauses::morph(reader, morph), at)
-                    }
-                };
+                let morph = inner.find(|inner| inner.as_rule() == Rule::morph);
+                let clause = morph.map_or(Clause::Absent, |morph| {
+                    let at = reader.span(&morph);
+                    Clause::read(clauses::morph(reader, morph), at)
+                });
                 Statement::Loop(Box::new(Spanned::new(clause, span)))
             }
             Rule::cue_line => {
@@ -361,20 +369,7 @@ impl<'t> Parser<'t> {
                 body: Vec::new(),
             })),
             Rule::repeat_line => {
-                let times = reader.plain(&inner.next()?);
-                let times = times.and_then(|times| {
-                    let whole = number::whole_between(&times.value, 1, i64::MAX);
-                    if whole.is_none() {
-                        reader.findings.add_help(
-                            Code::TextNumber,
-                            times.span,
-                            "a block is repeated a whole number of times, at least once",
-                            "e.g. `repeat 3 {`",
-                        );
-                    }
-                    let whole = u64::try_from(whole?).ok()?;
-                    Some(Spanned::new(whole, times.span))
-                })?;
+                let times = times(reader, &inner.next()?)?;
                 Statement::Repeat(Box::new(RepeatNode {
                     span,
                     times,
@@ -388,4 +383,20 @@ impl<'t> Parser<'t> {
 
 fn broken(span: Span, word: Option<&'static str>, body: Vec<Statement>) -> Statement {
     Statement::Broken(Box::new(BrokenNode { span, word, body }))
+}
+
+/// N of `repeat N`.
+fn times(reader: &mut Reader<'_>, pair: &Pair<'_, Rule>) -> Option<Spanned<u64>> {
+    let times = reader.plain(pair)?;
+    let whole = number::whole_between(&times.value, 1, i64::MAX);
+    if whole.is_none() {
+        reader.findings.add_help(
+            Code::TextNumber,
+            times.span,
+            "a block is repeated a whole number of times, at least once",
+            "e.g. `repeat 3 {`",
+        );
+    }
+    let whole = u64::try_from(whole?).ok()?;
+    Some(Spanned::new(whole, times.span))
 }
