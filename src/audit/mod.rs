@@ -13,6 +13,7 @@ mod double;
 mod fields;
 mod head;
 mod laws;
+pub mod log;
 mod rows;
 mod sine;
 mod stream;
