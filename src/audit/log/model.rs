@@ -23,8 +23,8 @@ pub(super) struct Model {
     pub(super) rotors: Pair<RotorModel>,
     /// The largest change of speed of either rotor, motor turns/s².
     pub(super) steepest: f64,
-    /// The highest planned speed of either motor, turns/s, above zero.
-    pub(super) fastest: f64,
+    /// The highest planned speed of each motor, turns/s, above zero.
+    pub(super) fastest: Pair<f64>,
     /// The longest hold with the transitions around it, in seconds.
     pub(super) longest_stretch: f64,
 }
@@ -36,6 +36,8 @@ pub(super) struct RotorModel {
     pub(super) counts: f64,
     /// Mirror turns, counter-clockwise positive, of one motor turn.
     pub(super) mirror_per_motor: f64,
+    /// Motor turns after which motor and mirror are both where they were.
+    pub(super) closing: f64,
     /// Whether the phase at row 0 is known.
     pub(super) has_index: bool,
 }
@@ -91,7 +93,7 @@ impl Model {
         let tick = plan.tick().to_f64();
         let mut legs = Vec::with_capacity(plan.legs.len());
         let mut steepest = 0.0_f64;
-        let mut fastest = 1e-3_f64;
+        let mut fastest = Pair { a: 1e-3_f64, b: 1e-3 };
         for (index, leg) in plan.legs.iter().enumerate() {
             let Some(moves) = plan.moves(index) else {
                 break;
@@ -104,7 +106,8 @@ impl Model {
                 let rest = start - (start / &closing).floor() * &closing;
                 let model = MoveModel::of(planned, to_f64(&rest));
                 steepest = steepest.max(2.2 * model.change.abs() / length);
-                fastest = fastest.max(model.from.abs());
+                let most = fastest.of_mut(id);
+                *most = most.max(model.from.abs());
                 model
             });
             legs.push(LegModel {
@@ -124,6 +127,7 @@ impl Model {
                 RotorModel {
                     counts: f64::from(rotor.counts),
                     mirror_per_motor: 1.0 / to_f64(&rotor.motor_per_mirror()),
+                    closing: to_f64(&rotor.closing_turns()),
                     has_index: rotor.index.is_some(),
                 }
             }),

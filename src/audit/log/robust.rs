@@ -123,7 +123,7 @@ fn reweighted(groups: &Groups, residuals: &[Vec<f64>], scale: f64) -> Option<Ste
     })
 }
 
-fn biweight(u: f64) -> f64 {
+pub(super) fn biweight(u: f64) -> f64 {
     let share = u / TUNING;
     if share.abs() >= 1.0 {
         0.0
