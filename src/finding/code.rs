@@ -93,4 +93,28 @@ codes! {
     TimePast, "time/past", Error;
     /// A morph or hold shorter than half a tick.
     TimeShort, "time/short", Error;
+    /// A file given as a log that is none.
+    AuditLog, "audit/log", Error;
+    /// Lines of a log that are no samples.
+    AuditLines, "audit/lines", Warning;
+    /// A log that fits the show at no moment.
+    AuditNoMatch, "audit/no-match", Error;
+    /// Samples or pulses that are missing, late or doubled.
+    AuditSamples, "audit/samples", Warning;
+    /// Time stamps that step.
+    AuditTimeStep, "audit/time-step", Warning;
+    /// A controller's clock that is far from the logger's.
+    AuditClock, "audit/clock", Note;
+    /// A cue about which the log says too little.
+    AuditUnseen, "audit/unseen", Note;
+    /// A figure whose pose turns.
+    DriftPose, "drift/pose", Warning;
+    /// Mirrors that ran in another ratio than the figure's.
+    DriftRatio, "drift/ratio", Error;
+    /// Rotors that do not keep their ratio over the log.
+    DriftRotors, "drift/rotors", Warning;
+    /// A rotor that left its place in a transition.
+    DriftJump, "drift/jump", Warning;
+    /// A figure that began in another pose than planned.
+    DriftOffset, "drift/offset", Warning;
 }

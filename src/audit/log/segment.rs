@@ -156,6 +156,10 @@ pub(super) fn report(plan: &Plan, model: &Model, log: &Log, placed: Placed) -> L
         for (time, _) in &mut cue.trace {
             *time += origin;
         }
+        for stand in &mut cue.stands {
+            stand.from += origin;
+            stand.until += origin;
+        }
     }
     let stepped_away: u64 = lost_in_steps(log, &stepped);
     LogReport {
