@@ -125,7 +125,14 @@ pub(super) fn cues(
     bins.into_iter()
         .filter_map(|(leg, bin)| {
             let planned = hold(plan, leg)?;
+            let rate_error = bin
+                .stretches
+                .iter()
+                .filter_map(|number| stretches.get(*number))
+                .map(|stretch| stretch.rate_error.min(MOST_RATE_ERROR))
+                .fold(0.0, f64::max);
             let scene = Scene {
+                rate_error,
                 plan,
                 model,
                 kind,
@@ -144,7 +151,12 @@ fn hold_kind(plan: &Plan, leg: usize) -> bool {
         .is_some_and(|leg| leg.kind == crate::plan::LegKind::Hold)
 }
 
+/// A clock whose rate is not known at all is still no further off than this.
+const MOST_RATE_ERROR: f64 = 0.01;
+
 struct Scene<'a> {
+    /// Of the controller's clock: how long a minute is.
+    rate_error: f64,
     plan: &'a Plan,
     model: &'a Model,
     kind: LogKind,
@@ -171,7 +183,7 @@ impl Scene<'_> {
         let rpm = Pair::each(|rotor| {
             lines.of(rotor).as_ref().map(|line| Measured {
                 value: 60.0 * (self.hold.motor.of(rotor) + line.slope),
-                error: 60.0 * line.error,
+                error: 60.0 * line.error.hypot(self.hold.motor.of(rotor) * self.rate_error),
             })
         });
         let ratio = self.ratio(&lines, phase.as_ref());
@@ -205,7 +217,9 @@ impl Scene<'_> {
                 let scale = self.hold.pose_per_phase * 360.0 * 60.0;
                 Measured {
                     value: phase.slope * scale,
-                    error: phase.error * scale.abs(),
+                    // Where the clock's rate is not known well, neither is the length of a minute.
+                    error: phase.error.hypot((phase.slope.abs() + self.spin()) * self.rate_error)
+                        * scale.abs(),
                 }
             }),
             pose_off_deg: self.pose_off(&lines),
@@ -237,6 +251,12 @@ impl Scene<'_> {
             })
             .collect();
         line(&groups, self.resolution(rotor))
+    }
+
+    /// How fast q·θa − p·θb turns as planned, turns/s, without its sign.
+    fn spin(&self) -> f64 {
+        let shares = self.shares();
+        (shares.a * self.hold.motor.a + shares.b * self.hold.motor.b).abs()
     }
 
     /// Motor turns to turns of q·θa − p·θb.

@@ -143,8 +143,12 @@ pub fn audit(
     plan: &Plan,
     place: Place,
 ) -> Result<(Option<LogReport>, Vec<Finding>), NoLog> {
-    let log = read::read(file)?;
+    let mut log = read::read(file)?;
     let model = Model::of(plan);
+    read::unroll(
+        &mut log.samples,
+        (model.rotors.a.counts, model.rotors.b.counts),
+    );
     let Some(placed) = segment::place(&model, &log) else {
         return Ok((None, vec![findings::no_match(&log, place)]));
     };

@@ -143,11 +143,6 @@ impl Model {
         self.total
     }
 
-    /// Whether the table repeats.
-    pub(super) fn is_looped(&self) -> bool {
-        self.looped.is_some()
-    }
-
     /// The moment `time` seconds after row 0; `None` before row 0 and after a run-down.
     pub(super) fn moment(&self, time: f64) -> Option<Moment> {
         if time < 0.0 {
@@ -178,11 +173,6 @@ impl Model {
             if folded >= self.total { start } else { folded },
             passes.to_u64().unwrap_or(0),
         ))
-    }
-
-    /// How long the leg at `index` takes, in seconds.
-    pub(super) fn length(&self, index: usize) -> f64 {
-        self.legs.get(index).map_or(0.0, |leg| leg.length)
     }
 
     /// Motor phase (turns, modulo the closing turns, not wrapped) and speed (turns/s) `time` seconds after row 0.

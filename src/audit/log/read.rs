@@ -346,3 +346,49 @@ impl Store {
         }
     }
 }
+
+/// Takes the roll-over out of counters that are wider than a turn and do not hold a whole number of turns.
+///
+/// A counter that runs within one turn, or never rolls over, stays as it is.
+pub(super) fn unroll(samples: &mut [Sample], counts: (f64, f64)) {
+    let pick: [(fn(&Value) -> Option<f64>, f64); 2] = [
+        (|value| match value { Value::Positions(a, _) => Some(*a), Value::Pulse(_) => None }, counts.0),
+        (|value| match value { Value::Positions(_, b) => Some(*b), Value::Pulse(_) => None }, counts.1),
+    ];
+    for (rotor, (of, turn)) in pick.into_iter().enumerate() {
+        let Some(width) = counter_width(samples, of, turn) else {
+            continue;
+        };
+        let mut turned = 0.0;
+        let mut last: Option<f64> = None;
+        for sample in samples.iter_mut() {
+            let Some(value) = of(&sample.value) else { continue };
+            if let Some(before) = last {
+                turned -= width * ((value - before) / width).round();
+            }
+            last = Some(value);
+            if let Value::Positions(a, b) = &mut sample.value {
+                *(if rotor == 0 { a } else { b }) += turned;
+            }
+        }
+    }
+}
+
+/// 2¹⁶, 2²⁴ or 2³², where the values leave one turn, keep within such a width, and jump by more than half of it.
+fn counter_width(samples: &[Sample], of: fn(&Value) -> Option<f64>, turn: f64) -> Option<f64> {
+    let values = || samples.iter().filter_map(|sample| of(&sample.value));
+    let low = values().fold(f64::INFINITY, f64::min);
+    let high = values().fold(f64::NEG_INFINITY, f64::max);
+    if low >= 0.0 && high < turn {
+        return None;
+    }
+    let jump = values()
+        .zip(values().skip(1))
+        .map(|(one, next)| (next - one).abs())
+        .fold(0.0, f64::max);
+    [16, 24, 32]
+        .into_iter()
+        .map(|bits| 2.0_f64.powi(bits))
+        .find(|width| high - low < *width)
+        .filter(|width| jump > width / 2.0)
+}
