@@ -9,6 +9,7 @@ const LOGGER: Logger = Logger {
     row_0: -4.75,
     ppm: -130.0,
     jitter: 5e-6,
+    noise: 0.0,
 };
 
 fn machine() -> Machine {
@@ -61,7 +62,11 @@ fn lost_late_and_doubled_samples_are_counted() {
     // One sample 6 ms late, as it was taken.
     let late = samples[1000].0 + 0.006;
     let [a, b] = actual(LOGGER.plan(late));
-    samples[1000] = (late, (a * 4096.0).round() as i64, (b * 4096.0).round() as i64);
+    samples[1000] = (
+        late,
+        (a * 4096.0).round() as i64,
+        (b * 4096.0).round() as i64,
+    );
     let (report, findings) = machine.report(&wrapped_csv(&machine, &samples));
     assert_eq!((report.lost, report.late, report.doubled), (4, 1, 1));
     assert_close(report.clock.row_0_s, LOGGER.row_0, 20e-6, "the logger's");
@@ -128,10 +133,14 @@ fn wider_counters_are_followed() {
     let (within, _) = machine.report(&text(&|count| count.rem_euclid(4000)));
     let (never, _) = machine.report(&text(&|count| count));
     let (short, _) = machine.report(&text(&|count| count.rem_euclid(65_536)));
-    let (both_signs, _) = machine.report(&text(&|count| (count + 32_768).rem_euclid(65_536) - 32_768));
+    let (both_signs, _) =
+        machine.report(&text(&|count| (count + 32_768).rem_euclid(65_536) - 32_768));
     for other in [&never, &short, &both_signs] {
         for (one, two) in within.cues.iter().zip(&other.cues) {
-            let (one, two) = (one.drift_deg_per_min.unwrap(), two.drift_deg_per_min.unwrap());
+            let (one, two) = (
+                one.drift_deg_per_min.unwrap(),
+                two.drift_deg_per_min.unwrap(),
+            );
             assert_close(one.value, two.value, 1e-9, "the same positions");
         }
     }
@@ -174,8 +183,21 @@ fn large_times_keep_their_fineness() {
     let mut text = String::from("time_s,a_counts,b_counts\n");
     for (time, a, b) in &samples {
         let micros = (time * 1e6).round() as i64 + 1_764_592_081_000_000;
-        writeln!(text, "{}.{:06},{},{}", micros / 1_000_000, micros % 1_000_000, a.rem_euclid(4096), b.rem_euclid(4096)).unwrap();
+        writeln!(
+            text,
+            "{}.{:06},{},{}",
+            micros / 1_000_000,
+            micros % 1_000_000,
+            a.rem_euclid(4096),
+            b.rem_euclid(4096)
+        )
+        .unwrap();
     }
     let (report, _) = machine.report(&text);
-    assert_close(report.clock.row_0_s - 1_764_592_081.0, LOGGER.row_0, 20e-6, "the logger's");
+    assert_close(
+        report.clock.row_0_s - 1_764_592_081.0,
+        LOGGER.row_0,
+        20e-6,
+        "the logger's",
+    );
 }

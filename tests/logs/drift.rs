@@ -9,6 +9,7 @@ const LOGGER: Logger = Logger {
     row_0: 3.217,
     ppm: 85.0,
     jitter: 20e-6,
+    noise: 0.0,
 };
 
 /// Every cue's drift lies within three of its stated errors of what the machine did, and no error is a mere excuse.
@@ -45,21 +46,47 @@ fn a_driven_machine_is_steady_and_its_clock_is_found() {
         let actual = |time: f64| machine.motors(time);
         let samples = LOGGER.positions(&machine, (1.5, 62.0, 0.01), &actual, &mut Dice::new(1));
         let (report, findings) = machine.report(&wrapped_csv(&machine, &samples));
-        assert_close(report.clock.row_0_s, LOGGER.row_0, 20e-6, "6000 samples of 20 µs jitter");
+        assert_close(
+            report.clock.row_0_s,
+            LOGGER.row_0,
+            20e-6,
+            "6000 samples of 20 µs jitter",
+        );
         let rate = report.clock.rate_ppm;
-        assert_close(rate.value, LOGGER.ppm, 4.0 * rate.error + 0.05, "the logger's ppm");
+        assert_close(
+            rate.value,
+            LOGGER.ppm,
+            4.0 * rate.error + 0.05,
+            "the logger's ppm",
+        );
         assert!(rate.error < 0.5, "{rate:?}");
         assert_drifts(&machine, &report, &actual, 0.2);
         for cue in &report.cues {
             let (p, q) = cue.planned;
-            assert_eq!(cue.nearest, Some((i64::from(p), i64::from(q))), "cue {}", cue.cue);
+            assert_eq!(
+                cue.nearest,
+                Some((i64::from(p), i64::from(q))),
+                "cue {}",
+                cue.cue
+            );
             let ratio = cue.ratio.unwrap();
-            assert_close(ratio.value, f64::from(p) / f64::from(q), 4.0 * ratio.error, "p : q");
+            assert_close(
+                ratio.value,
+                f64::from(p) / f64::from(q),
+                4.0 * ratio.error,
+                "p : q",
+            );
             assert_close(cue.pose_off_deg.unwrap(), 0.0, 0.1, "on the plan");
         }
         let found = codes(&findings);
-        assert!(!found.contains(&"drift/ratio") && !found.contains(&"drift/jump"), "{found:?}");
-        assert!(!found.contains(&"drift/rotors") && !found.contains(&"drift/offset"), "{found:?}");
+        assert!(
+            !found.contains(&"drift/ratio") && !found.contains(&"drift/jump"),
+            "{found:?}"
+        );
+        assert!(
+            !found.contains(&"drift/rotors") && !found.contains(&"drift/offset"),
+            "{found:?}"
+        );
     }
 }
 
@@ -76,7 +103,10 @@ fn free_running_motors_turn_the_pose() {
         let (report, findings) = machine.report(&wrapped_csv(&machine, &samples));
         assert_drifts(&machine, &report, &actual, 1.0);
         let found = codes(&findings);
-        assert!(found.contains(&"drift/pose") && found.contains(&"drift/rotors"), "{found:?}");
+        assert!(
+            found.contains(&"drift/pose") && found.contains(&"drift/rotors"),
+            "{found:?}"
+        );
         // 5:-4 at 12000 · 0.9 rpm: far more than a hundred degrees a minute.
         assert!(report.cues[0].drift_deg_per_min.unwrap().value.abs() > 50.0);
 
@@ -96,7 +126,14 @@ fn a_creeping_belt_shows_in_the_pulses() {
     let actual = |time: f64| {
         let [a, b] = machine.motors(time);
         let since = machine.motors(from)[1];
-        [a, if time > from { b - (b - since) * 2e-4 } else { b }]
+        [
+            a,
+            if time > from {
+                b - (b - since) * 2e-4
+            } else {
+                b
+            },
+        ]
     };
     let pulses = LOGGER.pulses(&machine, (1.5, 62.0), &actual, &mut Dice::new(4));
     let (report, findings) = machine.report(&pulse_csv(&pulses));
@@ -134,9 +171,17 @@ fn lost_steps_are_a_jump() {
     // b draws clockwise: 40 degrees behind at the motor are 40 further counter-clockwise at the mirror.
     assert_close(jump.by_deg, 40.0, 0.5, "the loss");
     let found = codes(&findings);
-    assert!(found.contains(&"drift/jump") && found.contains(&"drift/offset"), "{found:?}");
+    assert!(
+        found.contains(&"drift/jump") && found.contains(&"drift/offset"),
+        "{found:?}"
+    );
     // α = (q·θa − p·θb)/(q − p) with 1:−2: −40/(−3).
-    assert_close(report.cues[1].pose_off_deg.unwrap(), 40.0 / 3.0, 0.7, "turned pose");
+    assert_close(
+        report.cues[1].pose_off_deg.unwrap(),
+        40.0 / 3.0,
+        0.7,
+        "turned pose",
+    );
 }
 
 /// Rotor b lags 400 µs more than a: a pose turned by a fixed angle, and no drift.
@@ -154,7 +199,12 @@ fn unequal_lag_turns_the_pose_but_does_not_drift() {
         machine.mirrors(machine.motors(from + 1.0)),
     );
     let want = (q * (is[0] - should[0]) - p * (is[1] - should[1])) / (q - p) * 360.0;
-    assert_close(report.cues[0].pose_off_deg.unwrap(), want, 0.2, "the lag's angle");
+    assert_close(
+        report.cues[0].pose_off_deg.unwrap(),
+        want,
+        0.2,
+        "the lag's angle",
+    );
     assert!(codes(&findings).contains(&"drift/offset"));
 }
 
@@ -168,7 +218,11 @@ fn many_passes_of_a_loop() {
     };
     let samples = LOGGER.positions(&machine, (20.0, 240.0, 0.02), &actual, &mut Dice::new(7));
     let (report, _) = machine.report(&wrapped_csv(&machine, &samples));
-    assert!(report.cues.iter().all(|cue| cue.passes >= 4), "{:?}", report.cues.iter().map(|cue| cue.passes).collect::<Vec<_>>());
+    assert!(
+        report.cues.iter().all(|cue| cue.passes >= 4),
+        "{:?}",
+        report.cues.iter().map(|cue| cue.passes).collect::<Vec<_>>()
+    );
     assert_drifts(&machine, &report, &actual, 0.2);
     let pulses = LOGGER.pulses(&machine, (20.0, 180.0), &actual, &mut Dice::new(8));
     let (report, _) = machine.report(&pulse_csv(&pulses));

@@ -109,14 +109,18 @@ impl Machine {
             let length = (last - self.loop_start) as f64;
             let passes = ((at - self.loop_start as f64) / length).floor();
             at -= passes * length;
-            gained = [0, 1].map(|r| passes * (self.turns[last][r] - self.turns[self.loop_start][r]));
+            gained =
+                [0, 1].map(|r| passes * (self.turns[last][r] - self.turns[self.loop_start][r]));
         }
         let row = (at.floor() as usize).min(last - 1);
         let u = at - row as f64;
         [0, 1].map(|r| {
             // Cubic Hermite interpolation: both ends with their speeds.
             let (x0, x1) = (self.turns[row][r], self.turns[row + 1][r]);
-            let (v0, v1) = (self.speed[row][r] * self.tick, self.speed[row + 1][r] * self.tick);
+            let (v0, v1) = (
+                self.speed[row][r] * self.tick,
+                self.speed[row + 1][r] * self.tick,
+            );
             let (u2, u3) = (u * u, u * u * u);
             gained[r]
                 + x0 * (2.0 * u3 - 3.0 * u2 + 1.0)
@@ -163,7 +167,8 @@ impl Machine {
 
     /// How many cues there are.
     pub(crate) fn cues(&self) -> u32 {
-        self.plan.legs.iter().map(|leg| leg.cue).max().unwrap() - u32::from(self.plan.loop_leg.is_some())
+        self.plan.legs.iter().map(|leg| leg.cue).max().unwrap()
+            - u32::from(self.plan.loop_leg.is_some())
     }
 
     pub(crate) fn audit(&self, log: &str) -> (Option<LogReport>, Vec<Finding>) {
@@ -185,6 +190,8 @@ pub(crate) struct Logger {
     pub(crate) ppm: f64,
     /// Deviation of its time stamps, s.
     pub(crate) jitter: f64,
+    /// Deviation of its positions before they are rounded, counts.
+    pub(crate) noise: f64,
 }
 
 impl Logger {
@@ -210,7 +217,7 @@ impl Logger {
                 let motors = actual(self.plan(when));
                 let [a, b] = [0, 1].map(|at| {
                     let counts = f64::from(machine.plan.rig.rotor(RotorId::BOTH[at]).counts);
-                    (motors[at] * counts).round() as i64
+                    (motors[at] * counts + self.noise * dice.normal()).round() as i64
                 });
                 (when + self.jitter * dice.normal(), a, b)
             })
@@ -266,7 +273,13 @@ pub(crate) fn wrapped_csv(machine: &Machine, samples: &[(f64, i64, i64)]) -> Str
     let turn = RotorId::BOTH.map(|id| i64::from(machine.plan.rig.rotor(id).counts));
     let mut text = String::from("time_s,a_counts,b_counts\n");
     for (time, a, b) in samples {
-        writeln!(text, "{time:.6},{},{}", a.rem_euclid(turn[0]), b.rem_euclid(turn[1])).unwrap();
+        writeln!(
+            text,
+            "{time:.6},{},{}",
+            a.rem_euclid(turn[0]),
+            b.rem_euclid(turn[1])
+        )
+        .unwrap();
     }
     text
 }

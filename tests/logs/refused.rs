@@ -13,7 +13,10 @@ fn reason(machine: &Machine, text: &[u8]) -> NoLog {
 fn what_is_no_log_is_refused_by_name() {
     let machine = Machine::new(RIG, SHOW);
     for text in ["", "\n\n", "time_s,a_counts,b_counts\n", "# nothing\n"] {
-        assert!(matches!(reason(&machine, text.as_bytes()), NoLog::Empty), "{text:?}");
+        assert!(
+            matches!(reason(&machine, text.as_bytes()), NoLog::Empty),
+            "{text:?}"
+        );
     }
     let columns = reason(&machine, b"seconds,left,right\n0,1,2\n");
     assert!(matches!(&columns, NoLog::Columns(line) if line == "seconds,left,right"));
@@ -21,7 +24,10 @@ fn what_is_no_log_is_refused_by_name() {
     assert_eq!(finding.code.text(), "audit/log");
     assert!(finding.help.unwrap().contains("time_s,a_counts,b_counts"));
     let mostly = "time_s,rotor\n1,a\nx\ny\nz\n";
-    assert!(matches!(reason(&machine, mostly.as_bytes()), NoLog::Unreadable(3)));
+    assert!(matches!(
+        reason(&machine, mostly.as_bytes()),
+        NoLog::Unreadable(3)
+    ));
     let mut noise = Vec::new();
     let mut dice = Dice::new(21);
     for _ in 0..200_000 {
@@ -48,11 +54,15 @@ fn a_log_of_something_else_matches_nowhere() {
         row_0: 0.0,
         ppm: 0.0,
         jitter: 0.0,
+        noise: 0.0,
     };
     // The right machine with its times in milliseconds.
     let actual = |time: f64| machine.motors(time);
     let right = logger.pulses(&machine, (0.0, 30.0), &actual, &mut dice);
-    let wrong: Vec<(f64, char)> = right.iter().map(|(time, rotor)| (time * 1e3, *rotor)).collect();
+    let wrong: Vec<(f64, char)> = right
+        .iter()
+        .map(|(time, rotor)| (time * 1e3, *rotor))
+        .collect();
     assert!(machine.audit(&pulse_csv(&wrong)).0.is_none());
 }
 
@@ -60,7 +70,16 @@ fn a_log_of_something_else_matches_nowhere() {
 #[test]
 fn hostile_numbers_are_borne() {
     let machine = Machine::new(RIG, SHOW);
-    let times = ["0", "-9e15", "9e15", "1e-300", "99999999999999999999", "0.5", "0.5", "-0.0"];
+    let times = [
+        "0",
+        "-9e15",
+        "9e15",
+        "1e-300",
+        "99999999999999999999",
+        "0.5",
+        "0.5",
+        "-0.0",
+    ];
     let counts = ["0", "-1", "1e300", "4095", "-1e300", "16777216"];
     let mut dice = Dice::new(23);
     for _ in 0..20 {

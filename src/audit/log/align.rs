@@ -105,7 +105,10 @@ impl<'l> Stretch<'l> {
             ..
         }) = later.copied()
         {
-            let counts = Pair { a: a1 - a0, b: b1 - b0 };
+            let counts = Pair {
+                a: a1 - a0,
+                b: b1 - b0,
+            };
             for rotor in RotorId::BOTH {
                 spans.push(Span {
                     rotor,

@@ -159,9 +159,13 @@ impl Cadence {
         if apart <= 1.35 * period + step {
             return;
         }
-        let turns = (apart / period).round();
-        if turns < 2.0 {
+        // 1.6 periods are one sample that came late, 1.8 are one that is missing.
+        let periods = apart / period;
+        let whole = (periods + 0.3).floor();
+        if periods - whole > 0.35 {
             self.event(time, EventKind::Late);
+        }
+        if whole < 2.0 {
             return;
         }
         #[expect(
@@ -169,7 +173,7 @@ impl Cadence {
             clippy::cast_sign_loss,
             reason = "at least 2, and saturating is right for a gap without bounds"
         )]
-        let missing = turns as u64 - 1;
+        let missing = whole as u64 - 1;
         self.event(time, EventKind::Lost(missing));
         if apart > (20.0 * period).max(0.5) && self.early.is_empty() {
             self.seam(time - apart, time);

@@ -50,7 +50,11 @@ impl Normal {
         let [x0, x1] = x;
         let [m00, m01, m11] = self.matrix;
         let [s0, s1] = self.side;
-        self.matrix = [m00 + weight * x0 * x0, m01 + weight * x0 * x1, m11 + weight * x1 * x1];
+        self.matrix = [
+            m00 + weight * x0 * x0,
+            m01 + weight * x0 * x1,
+            m11 + weight * x1 * x1,
+        ];
         self.side = [s0 + weight * x0 * y, s1 + weight * x1 * y];
     }
 

@@ -183,7 +183,10 @@ impl Scene<'_> {
         let rpm = Pair::each(|rotor| {
             lines.of(rotor).as_ref().map(|line| Measured {
                 value: 60.0 * (self.hold.motor.of(rotor) + line.slope),
-                error: 60.0 * line.error.hypot(self.hold.motor.of(rotor) * self.rate_error),
+                error: 60.0
+                    * line
+                        .error
+                        .hypot(self.hold.motor.of(rotor) * self.rate_error),
             })
         });
         let ratio = self.ratio(&lines, phase.as_ref());
@@ -191,7 +194,11 @@ impl Scene<'_> {
         let most = SMALL.max(i64::from(p.abs())).max(i64::from(q.abs()));
         let planned = self.plan.legs.get(self.leg);
         let cue = planned.and_then(|leg| self.plan.cue(leg));
-        let times: Vec<f64> = passes.iter().flatten().map(|(_, point)| point.time).collect();
+        let times: Vec<f64> = passes
+            .iter()
+            .flatten()
+            .map(|(_, point)| point.time)
+            .collect();
         CueReport {
             cue: self.hold.cue,
             written: self.hold.written,
@@ -209,7 +216,9 @@ impl Scene<'_> {
             planned_rpm: Pair::each(|rotor| 60.0 * self.hold.motor.of(rotor)),
             nearest: match (q, ratio) {
                 (0, _) => None,
-                (_, Some(measured)) => Some(signed(nearest(measured.value, measured.error, most), q)),
+                (_, Some(measured)) => {
+                    Some(signed(nearest(measured.value, measured.error, most), q))
+                }
                 _ => None,
             },
             ratio,
@@ -218,7 +227,9 @@ impl Scene<'_> {
                 Measured {
                     value: phase.slope * scale,
                     // Where the clock's rate is not known well, neither is the length of a minute.
-                    error: phase.error.hypot((phase.slope.abs() + self.spin()) * self.rate_error)
+                    error: phase
+                        .error
+                        .hypot((phase.slope.abs() + self.spin()) * self.rate_error)
                         * scale.abs(),
                 }
             }),
@@ -285,8 +296,8 @@ impl Scene<'_> {
                     .collect()
             })
             .collect();
-        let resolution = (shares.a * self.resolution(RotorId::A))
-            .hypot(shares.b * self.resolution(RotorId::B));
+        let resolution =
+            (shares.a * self.resolution(RotorId::A)).hypot(shares.b * self.resolution(RotorId::B));
         let fitted = line(&groups, resolution)?;
         Some(PhaseLine {
             slope: fitted.slope,
@@ -396,11 +407,16 @@ impl Scene<'_> {
                     until,
                     at: Pair::each(|rotor| {
                         let (_, ahead) = lines.of(rotor).as_ref()?.centres.get(number)?;
-                        let seen = pass.iter().any(|(_, point)| !point.ahead.of(rotor).is_nan());
+                        let seen = pass
+                            .iter()
+                            .any(|(_, point)| !point.ahead.of(rotor).is_nan());
                         seen.then(|| turns(rotor, *ahead))
                     }),
                     drift: Pair::each(|rotor| {
-                        turns(rotor, lines.of(rotor).as_ref().map_or(0.0, |line| line.slope))
+                        turns(
+                            rotor,
+                            lines.of(rotor).as_ref().map_or(0.0, |line| line.slope),
+                        )
                     }),
                 })
             })

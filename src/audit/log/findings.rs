@@ -14,15 +14,17 @@ const POSE_OFF_DEG: f64 = 3.0;
 /// The finding for a file that is no log.
 #[must_use]
 pub fn refusal(reason: &NoLog, place: Place) -> Finding {
-    let forms = "a log's lines are `time_s,a_counts,b_counts` (positions) or `time_s,rotor` (index pulses)";
+    let forms =
+        "a log's lines are `time_s,a_counts,b_counts` (positions) or `time_s,rotor` (index pulses)";
     match reason {
         NoLog::Io(error) => Finding::new(
             Code::AuditLog,
             place,
             format!("the log cannot be read: {error}"),
         ),
-        NoLog::Empty => Finding::new(Code::AuditLog, place, "there is not one sample in the log")
-            .help(forms),
+        NoLog::Empty => {
+            Finding::new(Code::AuditLog, place, "there is not one sample in the log").help(forms)
+        }
         NoLog::Columns(line) => Finding::new(
             Code::AuditLog,
             place,
@@ -164,13 +166,7 @@ fn of_clock(report: &LogReport, place: Place, findings: &mut Vec<Finding>) {
     }
 }
 
-fn of_cue(
-    plan: &Plan,
-    kind: LogKind,
-    cue: &CueReport,
-    log: Place,
-    findings: &mut Vec<Finding>,
-) {
+fn of_cue(plan: &Plan, kind: LogKind, cue: &CueReport, log: Place, findings: &mut Vec<Finding>) {
     let place = place_of(plan, cue.written, log);
     let (p, q) = cue.planned;
     if let (Some((near_p, near_q)), Some(ratio)) = (cue.nearest, cue.ratio)
@@ -214,7 +210,10 @@ fn of_cue(
             place,
             match kind {
                 LogKind::Pulses if p == 0 || q == 0 => {
-                    format!("cue {}: a mirror that stands gives no pulses, so its pose was not judged", cue.cue)
+                    format!(
+                        "cue {}: a mirror that stands gives no pulses, so its pose was not judged",
+                        cue.cue
+                    )
                 }
                 _ => format!("cue {}: too few samples to judge its pose", cue.cue),
             },
@@ -227,7 +226,10 @@ fn of_cue(
             Finding::new(
                 Code::DriftOffset,
                 place,
-                format!("cue {}: the pose began {off:+.1} deg from the planned one", cue.cue),
+                format!(
+                    "cue {}: the pose began {off:+.1} deg from the planned one",
+                    cue.cue
+                ),
             )
             .help("one rotor lags more than the other, or began off its mark"),
         );

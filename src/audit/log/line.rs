@@ -149,8 +149,14 @@ mod tests {
 
     #[test]
     fn quotes_and_spaces_come_off() {
-        assert_eq!(Separator::Comma.fields("\"0.5\", 12 ,\"a,b\""), ["0.5", "12", "a,b"]);
-        assert_eq!(Separator::Spaces.fields("  0.5   12\t7 "), ["0.5", "12", "7"]);
+        assert_eq!(
+            Separator::Comma.fields("\"0.5\", 12 ,\"a,b\""),
+            ["0.5", "12", "a,b"]
+        );
+        assert_eq!(
+            Separator::Spaces.fields("  0.5   12\t7 "),
+            ["0.5", "12", "7"]
+        );
     }
 
     #[test]

@@ -93,7 +93,10 @@ impl Model {
         let tick = plan.tick().to_f64();
         let mut legs = Vec::with_capacity(plan.legs.len());
         let mut steepest = 0.0_f64;
-        let mut fastest = Pair { a: 1e-3_f64, b: 1e-3 };
+        let mut fastest = Pair {
+            a: 1e-3_f64,
+            b: 1e-3,
+        };
         for (index, leg) in plan.legs.iter().enumerate() {
             let Some(moves) = plan.moves(index) else {
                 break;

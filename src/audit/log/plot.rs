@@ -69,7 +69,10 @@ fn round_step(least: f64) -> f64 {
     factor * power
 }
 
-#[expect(clippy::cast_possible_truncation, reason = "the logarithm of a finite number")]
+#[expect(
+    clippy::cast_possible_truncation,
+    reason = "the logarithm of a finite number"
+)]
 fn whole(value: f64) -> i32 {
     value as i32
 }
@@ -191,7 +194,10 @@ fn drift_lane(out: &mut String, report: &LogReport, time: &Scale) -> std::fmt::R
         let Some(drift) = cue.drift_deg_per_min else {
             continue;
         };
-        let middle = f64::midpoint(cue.span_s.0, cue.stands.first().map_or(cue.span_s.1, |stand| stand.until)) - report.time_s.0;
+        let middle = f64::midpoint(
+            cue.span_s.0,
+            cue.stands.first().map_or(cue.span_s.1, |stand| stand.until),
+        ) - report.time_s.0;
         let x = time.place(middle);
         let (low, high) = (
             scale.place(drift.value - 3.0 * drift.error),
@@ -210,7 +216,12 @@ fn drift_lane(out: &mut String, report: &LogReport, time: &Scale) -> std::fmt::R
     Ok(())
 }
 
-fn frame(out: &mut String, lane: &Lane, largest: f64, name: &str) -> Result<Scale, std::fmt::Error> {
+fn frame(
+    out: &mut String,
+    lane: &Lane,
+    largest: f64,
+    name: &str,
+) -> Result<Scale, std::fmt::Error> {
     let scale = Scale {
         from: -largest,
         until: largest,
@@ -245,7 +256,9 @@ fn frame(out: &mut String, lane: &Lane, largest: f64, name: &str) -> Result<Scal
 /// The shortest decimal of a round mark.
 fn plain(value: f64) -> String {
     let text = format!("{value:.6}");
-    text.trim_end_matches('0').trim_end_matches('.').replace('-', "\u{2212}")
+    text.trim_end_matches('0')
+        .trim_end_matches('.')
+        .replace('-', "\u{2212}")
 }
 
 fn escaped(text: &str) -> String {

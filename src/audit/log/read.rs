@@ -237,7 +237,9 @@ impl<'f> Lines<'f> {
                 self.skip_rest()?;
             }
             let text = String::from_utf8_lossy(&self.bytes);
-            let line = text.trim_start_matches('\u{feff}').trim_end_matches(['\n', '\r']);
+            let line = text
+                .trim_start_matches('\u{feff}')
+                .trim_end_matches(['\n', '\r']);
             let said = line.trim();
             if !said.is_empty() && !said.starts_with('#') {
                 return Ok(Some((self.number, line.to_owned())));
@@ -352,8 +354,20 @@ impl Store {
 /// A counter that runs within one turn, or never rolls over, stays as it is.
 pub(super) fn unroll(samples: &mut [Sample], counts: (f64, f64)) {
     let pick: [(fn(&Value) -> Option<f64>, f64); 2] = [
-        (|value| match value { Value::Positions(a, _) => Some(*a), Value::Pulse(_) => None }, counts.0),
-        (|value| match value { Value::Positions(_, b) => Some(*b), Value::Pulse(_) => None }, counts.1),
+        (
+            |value| match value {
+                Value::Positions(a, _) => Some(*a),
+                Value::Pulse(_) => None,
+            },
+            counts.0,
+        ),
+        (
+            |value| match value {
+                Value::Positions(_, b) => Some(*b),
+                Value::Pulse(_) => None,
+            },
+            counts.1,
+        ),
     ];
     for (rotor, (of, turn)) in pick.into_iter().enumerate() {
         let Some(width) = counter_width(samples, of, turn) else {
@@ -362,7 +376,9 @@ pub(super) fn unroll(samples: &mut [Sample], counts: (f64, f64)) {
         let mut turned = 0.0;
         let mut last: Option<f64> = None;
         for sample in samples.iter_mut() {
-            let Some(value) = of(&sample.value) else { continue };
+            let Some(value) = of(&sample.value) else {
+                continue;
+            };
             if let Some(before) = last {
                 turned -= width * ((value - before) / width).round();
             }

@@ -27,7 +27,10 @@ pub(super) fn place(model: &Model, log: &Log) -> Option<Placed> {
         stepped: Vec::new(),
     };
     let mut last: Option<(u32, Clock)> = None;
-    for samples in log.samples.chunk_by(|one, next| one.segment == next.segment) {
+    for samples in log
+        .samples
+        .chunk_by(|one, next| one.segment == next.segment)
+    {
         let Some(number) = samples.first().map(|sample| sample.segment) else {
             continue;
         };
@@ -117,7 +120,10 @@ fn follow_on(
     best
 }
 
-#[expect(clippy::cast_precision_loss, reason = "seconds since 1970 are far below 2⁵³")]
+#[expect(
+    clippy::cast_precision_loss,
+    reason = "seconds since 1970 are far below 2⁵³"
+)]
 fn origin(log: &Log) -> f64 {
     log.origin as f64
 }
@@ -203,7 +209,9 @@ fn sample_events(log: &Log, stepped: &[f64]) -> Vec<Event> {
     log.cadence
         .events
         .iter()
-        .filter(|event| !(stepped.contains(&event.time) && matches!(event.kind, EventKind::Lost(_))))
+        .filter(|event| {
+            !(stepped.contains(&event.time) && matches!(event.kind, EventKind::Lost(_)))
+        })
         .copied()
         .collect()
 }
@@ -229,9 +237,7 @@ fn clock_report(tracked: &[(u32, Tracked)], origin: f64) -> ClockReport {
             },
             |stretch| ppm((stretch.clock.rate, stretch.rate_error)),
         ),
-        rotor_ppm: Pair::each(|rotor| {
-            longest.and_then(|stretch| stretch.rates.of(rotor).map(ppm))
-        }),
+        rotor_ppm: Pair::each(|rotor| longest.and_then(|stretch| stretch.rates.of(rotor).map(ppm))),
     }
 }
 
@@ -255,7 +261,9 @@ fn attribute(
         doubled += twice;
         let clock = clocks.iter().find(|(segment, _)| *segment == event.segment);
         let moment = clock.and_then(|(_, clock)| model.moment(clock.plan(event.time)));
-        let number = moment.and_then(|Moment { leg, .. }| plan.legs.get(leg)).map(|leg| leg.cue);
+        let number = moment
+            .and_then(|Moment { leg, .. }| plan.legs.get(leg))
+            .map(|leg| leg.cue);
         let Some(number) = number else { continue };
         if let Ok(at) = cues.binary_search_by_key(&number, |cue| cue.cue)
             && let Some(cue) = cues.get_mut(at)
@@ -293,8 +301,7 @@ fn jumps(cues: &[CueReport], origin: f64) -> Vec<Jump> {
                 b: (after.until - after.from) / 2.0,
             };
             let (earlier, later) = (*before.drift.of(rotor), *after.drift.of(rotor));
-            let expected =
-                earlier * (halves.a + gap / 2.0) + later * (halves.b + gap / 2.0);
+            let expected = earlier * (halves.a + gap / 2.0) + later * (halves.b + gap / 2.0);
             let by = stands - stood - expected;
             let unsure = 3.0 * (earlier - later).abs() * (gap + halves.a.max(halves.b));
             if by.abs() > LEAST + unsure && jumps.len() < MOST {

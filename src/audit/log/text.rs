@@ -57,8 +57,16 @@ fn head(out: &mut String, report: &LogReport) -> std::fmt::Result {
     }
     for step in &report.steps {
         match step.by_s {
-            Some(by) => writeln!(out, "Step      time stamps step by {by:+.3} s after {:.3} s", step.at_s)?,
-            None => writeln!(out, "Step      time stamps step after {:.3} s; the rest has no place in the show", step.at_s)?,
+            Some(by) => writeln!(
+                out,
+                "Step      time stamps step by {by:+.3} s after {:.3} s",
+                step.at_s
+            )?,
+            None => writeln!(
+                out,
+                "Step      time stamps step after {:.3} s; the rest has no place in the show",
+                step.at_s
+            )?,
         }
     }
     Ok(())

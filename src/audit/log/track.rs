@@ -275,7 +275,9 @@ fn best_shift(
         let mut sum = 0.0;
         for (rotor, speed, ahead) in seen {
             let modulus = stretch.modulus(*rotor);
-            sum += (wrapped(ahead - speed * shift, modulus) / modulus).abs().min(0.25);
+            sum += (wrapped(ahead - speed * shift, modulus) / modulus)
+                .abs()
+                .min(0.25);
         }
         // Of equally good ones the nearest is meant.
         let score = sum / as_float(seen.len().max(1)) + 0.01 * (shift / reach).powi(2);
@@ -312,10 +314,11 @@ struct Fitted {
 /// What the distances say of the clock: a rotor whose distance, taken as time, grows evenly is one whose clock is off.
 fn fit(model: &Model, points: &[Point], clock: &Clock) -> Fitted {
     let lines = Pair::each(|rotor| rotor_line(model, points, clock, rotor));
-    let at_origin = |line: &Line| match line.centres.as_slice() {
-        // Only a rotor with an index tells where the beginning is: then there is one group.
-        [(time, late)] => Some(late - line.slope * time),
-        _ => None,
+    // Only a rotor with an index tells where the beginning is; one that runs away tells it best at first.
+    let at_origin = |rotor: RotorId, line: &Line| {
+        let (time, late) = line.centres.first()?;
+        let known = model.rotors.of(rotor).has_index;
+        known.then_some(late - line.slope * time)
     };
     let total = |line: &Line| clock.rate + line.slope;
     let (chosen, rate_error) = match (&lines.a, &lines.b) {
@@ -324,7 +327,7 @@ fn fit(model: &Model, points: &[Point], clock: &Clock) -> Fitted {
             if apart <= 4.0 * a.error.hypot(b.error) + 1e-8 {
                 let weight = b.error.powi(2) / (a.error.powi(2) + b.error.powi(2)).max(1e-300);
                 let rate = weight * a.slope + (1.0 - weight) * b.slope;
-                let starts = [at_origin(a), at_origin(b)];
+                let starts = [at_origin(RotorId::A, a), at_origin(RotorId::B, b)];
                 let known: Vec<f64> = starts.into_iter().flatten().collect();
                 let start = known.iter().sum::<f64>() / as_float(known.len().max(1));
                 (Some((start, rate)), a.error.min(b.error))
@@ -336,30 +339,47 @@ fn fit(model: &Model, points: &[Point], clock: &Clock) -> Fitted {
                 } else {
                     total(a).abs() <= total(b).abs()
                 };
-                let line = if first { a } else { b };
-                let start = at_origin(line).unwrap_or(0.0);
+                let (rotor, line) = if first {
+                    (RotorId::A, a)
+                } else {
+                    (RotorId::B, b)
+                };
+                let start = at_origin(rotor, line).unwrap_or(0.0);
                 (Some((start, line.slope)), apart / 2.0)
             }
         }
-        (Some(line), None) | (None, Some(line)) => (
-            Some((at_origin(line).unwrap_or(0.0), line.slope)),
+        (Some(line), None) => (
+            Some((at_origin(RotorId::A, line).unwrap_or(0.0), line.slope)),
+            line.error,
+        ),
+        (None, Some(line)) => (
+            Some((at_origin(RotorId::B, line).unwrap_or(0.0), line.slope)),
             line.error,
         ),
         (None, None) => (None, f64::INFINITY),
     };
     Fitted {
         step: chosen.map_or([0.0; 2], |(start, rate)| [start, rate]),
-        rates: Pair::each(|rotor| lines.of(rotor).as_ref().map(|line| (total(line), line.error))),
+        rates: Pair::each(|rotor| {
+            lines
+                .of(rotor)
+                .as_ref()
+                .map(|line| (total(line), line.error))
+        }),
         rate_error,
     }
 }
 
 /// Distance over planned speed, against time: the slope is a share by which the clock is off.
+///
+/// A rotor that is driven keeps one line through the whole log, and a long line is known best. One that runs free keeps
+/// it within a hold only, since its distance goes with the turns and not with the time. The line with the smaller error
+/// is taken; without an index there is an unknown distance to begin with, and only the second way is open.
 fn rotor_line(model: &Model, points: &[Point], clock: &Clock, rotor: RotorId) -> Option<Line> {
     const SAMPLES: usize = 20_000;
     let every = (points.len() / SAMPLES).max(1);
-    let one_group = model.rotors.of(rotor).has_index;
-    let mut groups: Vec<Vec<(f64, f64)>> = Vec::new();
+    let mut whole: Vec<(f64, f64)> = Vec::new();
+    let mut parts: Vec<Vec<(f64, f64)>> = Vec::new();
     let mut leg = None;
     for point in points.iter().step_by(every) {
         let ahead = *point.ahead.of(rotor);
@@ -368,14 +388,26 @@ fn rotor_line(model: &Model, points: &[Point], clock: &Clock, rotor: RotorId) ->
         if ahead.is_nan() || speed.abs() < 0.2 * model.fastest.of(rotor) {
             continue;
         }
-        let here = model.moment(plan_time).map(|moment| (moment.leg, moment.pass));
-        if groups.is_empty() || (here != leg && !one_group) {
-            groups.push(Vec::new());
+        let late = (point.time - clock.from, ahead / speed);
+        whole.push(late);
+        let here = model
+            .moment(plan_time)
+            .map(|moment| (moment.leg, moment.pass));
+        if parts.is_empty() || here != leg {
+            parts.push(Vec::new());
         }
         leg = here;
-        if let Some(group) = groups.last_mut() {
-            group.push((point.time - clock.from, ahead / speed));
+        if let Some(part) = parts.last_mut() {
+            part.push(late);
         }
     }
-    line(&groups, 0.0)
+    parts.retain(|part| part.len() >= 4);
+    let by_parts = line(&parts, 0.0);
+    if !model.rotors.of(rotor).has_index {
+        return by_parts;
+    }
+    match (line(&[whole], 0.0), by_parts) {
+        (Some(long), Some(short)) if short.error < long.error => Some(short),
+        (long, short) => long.or(short),
+    }
 }
