@@ -135,7 +135,7 @@ impl Table<'_> {
 }
 
 /// A new file in the target's folder, with the permissions that any new file would get.
-fn temporary_beside(target: &Path) -> io::Result<NamedTempFile> {
+pub(super) fn temporary_beside(target: &Path) -> io::Result<NamedTempFile> {
     let folder = match target.parent() {
         Some(folder) if !folder.as_os_str().is_empty() => folder.to_owned(),
         _ => PathBuf::from("."),

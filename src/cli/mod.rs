@@ -6,6 +6,7 @@
 //! | 1 | errors (with `--strict`, warnings too), or something could not be read or written |
 //! | 2 | wrong usage |
 
+mod audit;
 mod compile;
 mod deliver;
 mod explain;
@@ -107,6 +108,7 @@ enum Command {
     Validate(validate::Validate),
     Compile(compile::Compile),
     Runsheet(runsheet::Runsheet),
+    Audit(audit::Audit),
     Explain(explain::Explain),
 }
 
@@ -147,6 +149,7 @@ pub fn run(arguments: impl IntoIterator<Item = OsString>, streams: &mut Streams)
         Command::Validate(command) => command.run(common, streams),
         Command::Compile(command) => command.run(common, streams),
         Command::Runsheet(command) => command.run(common, streams),
+        Command::Audit(command) => command.run(common, streams),
         Command::Explain(command) => command.run(streams),
     };
     let result = result.and_then(|code| {

@@ -6,6 +6,7 @@
     clippy::panic
 )]
 
+mod audit;
 mod builder;
 mod compile;
 mod explain;

@@ -201,3 +201,17 @@ fn large_times_keep_their_fineness() {
         "the logger's",
     );
 }
+
+/// Ten samples a second: eighteen turns from one to the next.
+#[test]
+fn sparse_samples_are_enough() {
+    let machine = machine();
+    let actual = |time: f64| machine.motors(time);
+    let samples = LOGGER.positions(&machine, (-6.0, 50.0, 0.1), &actual, &mut Dice::new(17));
+    let (report, _) = machine.report(&wrapped_csv(&machine, &samples));
+    assert_close(report.clock.row_0_s, LOGGER.row_0, 50e-6, "the logger's");
+    for cue in &report.cues {
+        let drift = cue.drift_deg_per_min.unwrap();
+        assert_close(drift.value, 0.0, 3.0 * drift.error, "driven");
+    }
+}

@@ -40,17 +40,13 @@ pub fn refusal(reason: &NoLog, place: Place) -> Finding {
     }
 }
 
-/// The finding for a log that fits the show nowhere.
-pub(super) fn no_match(log: &Log, place: Place) -> Finding {
-    Finding::new(
-        Code::AuditNoMatch,
-        place,
-        format!(
-            "the log's {} samples match this show nowhere",
-            log.lines
-        ),
-    )
-    .help("is it the show that was loaded (compare the table's ID), are the times in seconds, are `counts` and `gear` right, do both rotors run?")
+/// The findings for a log that fits the show nowhere.
+pub(super) fn no_match(log: &Log, place: Place) -> Vec<Finding> {
+    let message = format!("the log's {} samples match this show nowhere", log.lines);
+    let help = "is it the show that was loaded (compare the table's ID), are the times in seconds, are `counts` and `gear` right, do both rotors run?";
+    let mut findings = vec![Finding::new(Code::AuditNoMatch, place, message).help(help)];
+    of_unreadable(log.unreadable, place, &mut findings);
+    findings
 }
 
 /// Everything worth a word.
@@ -93,14 +89,18 @@ fn place_of(plan: &Plan, written: u32, log: Place) -> Place {
     }
 }
 
-fn of_lines(report: &LogReport, place: Place, findings: &mut Vec<Finding>) {
-    if let (count, Some(first)) = report.unreadable {
-        findings.push(Finding::new(
-            Code::AuditLines,
-            place,
-            format!("{count} lines are no samples, the first of them is line {first}"),
-        ));
+fn of_unreadable(unreadable: (u64, Option<u64>), place: Place, findings: &mut Vec<Finding>) {
+    if let (count, Some(first)) = unreadable {
+        let message = match count {
+            1 => format!("line {first} is no sample"),
+            _ => format!("{count} lines are no samples, the first of them is line {first}"),
+        };
+        findings.push(Finding::new(Code::AuditLines, place, message));
     }
+}
+
+fn of_lines(report: &LogReport, place: Place, findings: &mut Vec<Finding>) {
+    of_unreadable(report.unreadable, place, findings);
     if report.lost + report.late + report.doubled > 0 {
         let what = match report.kind {
             LogKind::Positions => "samples",

@@ -150,7 +150,7 @@ pub fn audit(
         (model.rotors.a.counts, model.rotors.b.counts),
     );
     let Some(placed) = segment::place(&model, &log) else {
-        return Ok((None, vec![findings::no_match(&log, place)]));
+        return Ok((None, findings::no_match(&log, place)));
     };
     let report = segment::report(plan, &model, &log, placed);
     let findings = findings::of(plan, &report, place);

@@ -1,10 +1,10 @@
-//! The planned motion at any moment, in floating point, read off the plan's exact moves.
+//! The planned motion at any moment, in floating point, read off the plan's exact moves with the auditor's laws.
 //!
 //! Phases are kept modulo the motor turns after which motor and mirror are both where they were (N of a gear N:D), so
 //! that a show of thirty days is as fine as one of a minute: within 10⁻⁷ turn, a hold of 30 days at 10 000 rpm included.
 //! The plan's loop goes on for ever; before its first row and after a run-down both rotors rest.
 
-use super::law::Law;
+use super::law::{Law, Laws};
 use crate::exact::to_f64;
 use crate::motion::Move;
 use crate::plan::{LegKind, Plan};
@@ -92,6 +92,7 @@ impl Model {
     pub(super) fn of(plan: &Plan) -> Self {
         let tick = plan.tick().to_f64();
         let mut legs = Vec::with_capacity(plan.legs.len());
+        let mut laws = Laws::default();
         let mut steepest = 0.0_f64;
         let mut fastest = Pair {
             a: 1e-3_f64,
@@ -107,7 +108,7 @@ impl Model {
                 let closing = plan.rig.rotor(id).closing_turns();
                 let start = planned.start.value();
                 let rest = start - (start / &closing).floor() * &closing;
-                let model = MoveModel::of(planned, to_f64(&rest));
+                let model = MoveModel::of(planned, to_f64(&rest), &mut laws);
                 steepest = steepest.max(2.2 * model.change.abs() / length);
                 let most = fastest.of_mut(id);
                 *most = most.max(model.from.abs());
@@ -197,9 +198,9 @@ impl Model {
 }
 
 impl MoveModel {
-    fn of(planned: &Move, start: f64) -> Self {
+    fn of(planned: &Move, start: f64, laws: &mut Laws) -> Self {
         Self {
-            law: Law::of(&planned.shape),
+            law: laws.of(&planned.shape),
             start,
             from: planned.from.to_f64(),
             change: (&planned.to - &planned.from).to_f64(),
