@@ -57,7 +57,6 @@ fn stated_errors_cover_the_truth() {
             }
         }
         assert_eq!(all, 120);
-        eprintln!("pulses {pulses}: {ones} and {threes} of {all}");
         assert!(threes >= all - 2, "{threes} of {all} within three errors");
         assert!(
             (66..=98).contains(&ones),

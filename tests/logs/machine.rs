@@ -240,7 +240,7 @@ impl Logger {
             let next = time + step;
             let after = machine.mirrors(actual(self.plan(next)));
             for at in [0, 1] {
-                if before[at].floor() != after[at].floor() {
+                if (before[at].floor() - after[at].floor()).abs() > 0.5 {
                     let mark = before[at].floor().max(after[at].floor());
                     let (mut low, mut high) = (time, next);
                     for _ in 0..40 {

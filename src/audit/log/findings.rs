@@ -54,8 +54,15 @@ pub(super) fn of(plan: &Plan, report: &LogReport, place: Place) -> Vec<Finding> 
     let mut findings = Vec::new();
     of_lines(report, place, &mut findings);
     of_clock(report, place, &mut findings);
+    // Where the rotors run apart, every pose is off because of it; once is enough.
+    let apart = findings
+        .iter()
+        .any(|finding| finding.code == Code::DriftRotors);
     for cue in &report.cues {
         of_cue(plan, report.kind, cue, place, &mut findings);
+        if !apart {
+            findings.extend(off_pose(plan, cue, place));
+        }
     }
     for jump in &report.jumps {
         let at = place_of(plan, jump.written, place);
@@ -219,19 +226,15 @@ fn of_cue(plan: &Plan, kind: LogKind, cue: &CueReport, log: Place, findings: &mu
             },
         )),
     }
-    if let Some(off) = cue.pose_off_deg
-        && off.abs() > POSE_OFF_DEG
-    {
-        findings.push(
-            Finding::new(
-                Code::DriftOffset,
-                place,
-                format!(
-                    "cue {}: the pose began {off:+.1} deg from the planned one",
-                    cue.cue
-                ),
-            )
-            .help("one rotor lags more than the other, or began off its mark"),
-        );
-    }
+}
+
+fn off_pose(plan: &Plan, cue: &CueReport, log: Place) -> Option<Finding> {
+    let off = cue.pose_off_deg.filter(|off| off.abs() > POSE_OFF_DEG)?;
+    let message = format!(
+        "cue {}: the pose began {off:+.1} deg from the planned one",
+        cue.cue
+    );
+    let place = place_of(plan, cue.written, log);
+    let help = "one rotor lags more than the other, or began off its mark";
+    Some(Finding::new(Code::DriftOffset, place, message).help(help))
 }

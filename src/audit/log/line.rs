@@ -144,6 +144,7 @@ fn plain(field: &str, comma: bool) -> Option<String> {
 }
 
 #[cfg(test)]
+#[allow(clippy::expect_used, reason = "a test that fails may panic")]
 mod tests {
     use super::{Separator, number, stamp};
 

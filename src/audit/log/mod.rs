@@ -145,10 +145,8 @@ pub fn audit(
 ) -> Result<(Option<LogReport>, Vec<Finding>), NoLog> {
     let mut log = read::read(file)?;
     let model = Model::of(plan);
-    read::unroll(
-        &mut log.samples,
-        (model.rotors.a.counts, model.rotors.b.counts),
-    );
+    let counts = Pair::each(|rotor| model.rotors.of(rotor).counts);
+    read::unroll(&mut log.samples, &counts);
     let Some(placed) = segment::place(&model, &log) else {
         return Ok((None, findings::no_match(&log, place)));
     };

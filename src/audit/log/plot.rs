@@ -1,6 +1,7 @@
 //! A log's report as one picture: above, how far the pose stands from the planned one over the time of the log; below,
 //! the drift of each cue with a bar of three errors either way. A bar that misses the zero line is a pose that turns.
 
+use super::robust::as_float;
 use super::{CueReport, LogReport};
 use std::fmt::Write;
 
@@ -16,8 +17,8 @@ const DRIFT: Lane = Lane {
     height: 150.0,
 };
 const HEIGHT: f64 = 600.0;
-/// Cues whose number and figure are written; beyond, the bands alone.
-const MOST_LABELS: usize = 24;
+/// Width of a sign of a label, about.
+const SIGN: f64 = 7.4;
 
 const STYLE: &str = "svg{background:#fbfaf6;color:#1d2430;font:13px system-ui,sans-serif}\
 text{fill:currentColor}.quiet{opacity:.72}.frame{fill:none;stroke:currentColor;stroke-opacity:.35}\
@@ -110,6 +111,7 @@ fn draw(out: &mut String, report: &LogReport) -> std::fmt::Result {
          <style>{STYLE}</style>\n\
          <text x=\"{LEFT}\" y=\"28\" font-size=\"18\">{title}</text>\n"
     )?;
+    legend(out)?;
     bands(out, report, &time)?;
     pose_lane(out, report, &time)?;
     drift_lane(out, report, &time)?;
@@ -124,34 +126,64 @@ fn draw(out: &mut String, report: &LogReport) -> std::fmt::Result {
     }
     writeln!(
         out,
-        "<text class=\"quiet\" x=\"{:.1}\" y=\"{:.1}\" text-anchor=\"end\">seconds of the log</text>\n</svg>",
+        "<text class=\"quiet\" x=\"{:.1}\" y=\"{:.1}\" text-anchor=\"end\">seconds since the first sample</text>\n</svg>",
         WIDTH - RIGHT,
         DRIFT.top + DRIFT.height + 42.0
     )
 }
 
+fn legend(out: &mut String) -> std::fmt::Result {
+    for (x, class, words) in [
+        (690.0, "still", "stands"),
+        (765.0, "turning", "turns, beyond three errors"),
+    ] {
+        writeln!(
+            out,
+            "<g class=\"{class}\"><circle cx=\"{x}\" cy=\"23.5\" r=\"3.6\"/></g><text class=\"quiet\" x=\"{}\" y=\"28\">{words}</text>",
+            x + 9.0
+        )?;
+    }
+    Ok(())
+}
+
 /// Where each figure stood, a band for each pass.
 fn bands(out: &mut String, report: &LogReport, time: &Scale) -> std::fmt::Result {
-    let label = report.cues.len() <= MOST_LABELS;
-    for cue in &report.cues {
-        for (number, stand) in cue.stands.iter().enumerate().take(400) {
-            let from = time.place(stand.from - report.time_s.0);
-            let until = time.place(stand.until - report.time_s.0);
-            for lane in [&POSE, &DRIFT] {
+    let mut stands: Vec<(f64, f64, &CueReport)> = report
+        .cues
+        .iter()
+        .flat_map(|cue| cue.stands.iter().take(400).map(move |stand| (stand, cue)))
+        .map(|(stand, cue)| {
+            let place = |at: f64| time.place(at - report.time_s.0);
+            (place(stand.from), place(stand.until), cue)
+        })
+        .collect();
+    stands.sort_by(|one, other| one.0.total_cmp(&other.0));
+    // A label is written where it does not run into the one before or the next band.
+    let mut free = 0.0;
+    for (number, (from, until, cue)) in stands.iter().enumerate() {
+        for lane in [&POSE, &DRIFT] {
+            writeln!(
+                out,
+                "<rect class=\"band\" x=\"{from:.1}\" y=\"{:.1}\" width=\"{:.1}\" height=\"{:.1}\"/>",
+                lane.top,
+                (until - from).max(0.5),
+                lane.height
+            )?;
+        }
+        let next = stands.get(number + 1).map_or(WIDTH, |next| next.0);
+        let room = |text: &str| *from + SIGN * as_float(text.chars().count()) < next;
+        let label = cue.cue.to_string();
+        if *from >= free && room(&label) {
+            writeln!(
+                out,
+                "<text x=\"{from:.1}\" y=\"{:.1}\">{label}</text>",
+                POSE.top - 22.0
+            )?;
+            free = from + SIGN * as_float(label.len());
+            if room(&cue.figure) {
                 writeln!(
                     out,
-                    "<rect class=\"band\" x=\"{from:.1}\" y=\"{:.1}\" width=\"{:.1}\" height=\"{:.1}\"/>",
-                    lane.top,
-                    (until - from).max(0.5),
-                    lane.height
-                )?;
-            }
-            if label && number == 0 {
-                writeln!(
-                    out,
-                    "<text x=\"{from:.1}\" y=\"{:.1}\">{}</text><text class=\"quiet\" x=\"{from:.1}\" y=\"{:.1}\">{}</text>",
-                    POSE.top - 22.0,
-                    cue.cue,
+                    "<text class=\"quiet\" x=\"{from:.1}\" y=\"{:.1}\">{}</text>",
                     POSE.top - 7.0,
                     escaped(&cue.figure)
                 )?;
@@ -163,8 +195,12 @@ fn bands(out: &mut String, report: &LogReport, time: &Scale) -> std::fmt::Result
 
 fn pose_lane(out: &mut String, report: &LogReport, time: &Scale) -> std::fmt::Result {
     let all = || report.cues.iter().flat_map(|cue| cue.trace.iter());
-    let largest = all().map(|(_, value)| value.abs()).fold(0.01, f64::max);
-    let scale = frame(out, &POSE, largest * 1.08, "pose, degrees from the plan")?;
+    let scale = frame(
+        out,
+        &POSE,
+        all().map(|(_, value)| *value),
+        "pose, degrees from the plan",
+    )?;
     for cue in &report.cues {
         let class = if turns(cue) { "turning" } else { "still" };
         writeln!(out, "<g class=\"trace {class}\">")?;
@@ -182,14 +218,12 @@ fn pose_lane(out: &mut String, report: &LogReport, time: &Scale) -> std::fmt::Re
 }
 
 fn drift_lane(out: &mut String, report: &LogReport, time: &Scale) -> std::fmt::Result {
-    let largest = report
+    let reaches = report
         .cues
         .iter()
         .filter_map(|cue| cue.drift_deg_per_min)
-        .map(|drift| drift.value.abs() + 3.0 * drift.error)
-        .filter(|reach| reach.is_finite())
-        .fold(1e-4, f64::max);
-    let scale = frame(out, &DRIFT, largest * 1.12, "drift, degrees a minute")?;
+        .flat_map(|drift| [-3.0, 3.0].map(|times| drift.value + times * drift.error));
+    let scale = frame(out, &DRIFT, reaches, "drift, degrees a minute")?;
     for cue in &report.cues {
         let Some(drift) = cue.drift_deg_per_min else {
             continue;
@@ -216,15 +250,22 @@ fn drift_lane(out: &mut String, report: &LogReport, time: &Scale) -> std::fmt::R
     Ok(())
 }
 
+/// A lane's frame, grid and name, wide enough for zero and all values.
 fn frame(
     out: &mut String,
     lane: &Lane,
-    largest: f64,
+    values: impl Iterator<Item = f64>,
     name: &str,
 ) -> Result<Scale, std::fmt::Error> {
+    let (low, high) = values
+        .filter(|value| value.is_finite())
+        .fold((-1e-3, 1e-3), |(low, high): (f64, f64), value| {
+            (low.min(value), high.max(value))
+        });
+    let margin = 0.06 * (high - low);
     let scale = Scale {
-        from: -largest,
-        until: largest,
+        from: low - margin,
+        until: high + margin,
         at: lane.top + lane.height,
         length: -lane.height,
     };

@@ -6,7 +6,7 @@
 
 use super::cadence::Cadence;
 use super::line::{Separator, Stamp, number, stamp};
-use crate::rig::RotorId;
+use crate::rig::{Pair, RotorId};
 use std::io::{self, BufRead, Read};
 
 /// Samples kept at most.
@@ -171,17 +171,13 @@ impl Layout {
 /// [`NoLog`] where the file is none.
 pub(super) fn read(file: &mut dyn BufRead) -> Result<Log, NoLog> {
     let mut lines = Lines::new(file);
-    let (layout, mut held) = loop {
-        let Some((_, line)) = lines.next_line()? else {
-            return Err(NoLog::Empty);
-        };
-        if let Some(layout) = Layout::named(&line) {
-            break (layout, None);
-        }
-        if let Some(layout) = Layout::bare(&line) {
-            break (layout, Some(line));
-        }
-        return Err(NoLog::Columns(line.chars().take(80).collect()));
+    let Some((_, first)) = lines.next_line()? else {
+        return Err(NoLog::Empty);
+    };
+    let (layout, mut held) = match (Layout::named(&first), Layout::bare(&first)) {
+        (Some(layout), _) => (layout, None),
+        (None, Some(layout)) => (layout, Some(first)),
+        (None, None) => return Err(NoLog::Columns(first.chars().take(80).collect())),
     };
     let mut store = Store::new(layout.kind());
     let mut unreadable = (0_u64, None);
@@ -352,47 +348,37 @@ impl Store {
 /// Takes the roll-over out of counters that are wider than a turn and do not hold a whole number of turns.
 ///
 /// A counter that runs within one turn, or never rolls over, stays as it is.
-pub(super) fn unroll(samples: &mut [Sample], counts: (f64, f64)) {
-    let pick: [(fn(&Value) -> Option<f64>, f64); 2] = [
-        (
-            |value| match value {
-                Value::Positions(a, _) => Some(*a),
-                Value::Pulse(_) => None,
-            },
-            counts.0,
-        ),
-        (
-            |value| match value {
-                Value::Positions(_, b) => Some(*b),
-                Value::Pulse(_) => None,
-            },
-            counts.1,
-        ),
-    ];
-    for (rotor, (of, turn)) in pick.into_iter().enumerate() {
-        let Some(width) = counter_width(samples, of, turn) else {
+pub(super) fn unroll(samples: &mut [Sample], counts: &Pair<f64>) {
+    for rotor in RotorId::BOTH {
+        let Some(width) = counter_width(samples, rotor, *counts.of(rotor)) else {
             continue;
         };
         let mut turned = 0.0;
         let mut last: Option<f64> = None;
         for sample in samples.iter_mut() {
-            let Some(value) = of(&sample.value) else {
+            let Value::Positions(a, b) = &mut sample.value else {
                 continue;
             };
-            if let Some(before) = last {
-                turned -= width * ((value - before) / width).round();
+            let value = match rotor {
+                RotorId::A => a,
+                RotorId::B => b,
+            };
+            if let Some(before) = last.replace(*value) {
+                turned -= width * ((*value - before) / width).round();
             }
-            last = Some(value);
-            if let Value::Positions(a, b) = &mut sample.value {
-                *(if rotor == 0 { a } else { b }) += turned;
-            }
+            *value += turned;
         }
     }
 }
 
 /// 2¹⁶, 2²⁴ or 2³², where the values leave one turn, keep within such a width, and jump by more than half of it.
-fn counter_width(samples: &[Sample], of: fn(&Value) -> Option<f64>, turn: f64) -> Option<f64> {
-    let values = || samples.iter().filter_map(|sample| of(&sample.value));
+fn counter_width(samples: &[Sample], rotor: RotorId, turn: f64) -> Option<f64> {
+    let values = || {
+        samples.iter().filter_map(|sample| match sample.value {
+            Value::Positions(a, b) => Some(*Pair { a, b }.of(rotor)),
+            Value::Pulse(_) => None,
+        })
+    };
     let low = values().fold(f64::INFINITY, f64::min);
     let high = values().fold(f64::NEG_INFINITY, f64::max);
     if low >= 0.0 && high < turn {

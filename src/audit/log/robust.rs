@@ -399,6 +399,7 @@ pub(super) fn as_float(count: usize) -> f64 {
 }
 
 #[cfg(test)]
+#[allow(clippy::expect_used, reason = "a test that fails may panic")]
 mod tests {
     use super::{line, student};
 

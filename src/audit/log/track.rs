@@ -194,7 +194,7 @@ fn pulse(
             return;
         }
         let missing = turned.round();
-        if turning > 0.5 && missing >= 2.0 && missing < 1e6 {
+        if turning > 0.5 && (2.0..1e6).contains(&missing) {
             #[expect(
                 clippy::cast_possible_truncation,
                 clippy::cast_sign_loss,
