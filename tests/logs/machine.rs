@@ -232,7 +232,7 @@ impl Logger {
         actual: &dyn Fn(f64) -> Turns,
         dice: &mut Dice,
     ) -> Vec<(f64, char)> {
-        let step = 2e-4;
+        let step = 5e-4;
         let mut pulses = Vec::new();
         let mut before = machine.mirrors(actual(self.plan(from)));
         let mut time = from;
@@ -243,7 +243,7 @@ impl Logger {
                 if (before[at].floor() - after[at].floor()).abs() > 0.5 {
                     let mark = before[at].floor().max(after[at].floor());
                     let (mut low, mut high) = (time, next);
-                    for _ in 0..40 {
+                    for _ in 0..26 {
                         let middle = f64::midpoint(low, high);
                         let there = machine.mirrors(actual(self.plan(middle)))[at];
                         if (there < mark) == (before[at] < mark) {

@@ -134,8 +134,8 @@ fn draw(out: &mut String, report: &LogReport) -> std::fmt::Result {
 
 fn legend(out: &mut String) -> std::fmt::Result {
     for (x, class, words) in [
-        (690.0, "still", "stands"),
-        (765.0, "turning", "turns, beyond three errors"),
+        (672.0, "still", "stands"),
+        (747.0, "turning", "turns, beyond three errors"),
     ] {
         writeln!(
             out,
