@@ -70,7 +70,7 @@ impl<'a> Judge<'a> {
             return;
         }
         for breach in real(plan, index, no_way) {
-            let seam = closes && law_alone_fits(plan, index);
+            let seam = closes && law_alone_fits(plan, &owned, leg.ticks);
             let code = if seam { Code::LoopSeam } else { breach.code };
             let place = transition_place(plan, leg.kind, leg.written);
             let shortest = &mut self.shortest;
@@ -230,14 +230,20 @@ fn breaches(rotor: &Rotor, id: RotorId, profile: &Profile, no_way: bool) -> Vec<
 }
 
 /// Whether the law without any correction keeps every limit: then only the correction is too much.
-fn law_alone_fits(plan: &Plan, index: usize) -> bool {
+///
+/// An `scurve` is taken with the share that it would have if there were nothing to correct.
+fn law_alone_fits(plan: &Plan, owned: &Owned, ticks: Ticks) -> bool {
+    let free = Aim::Free;
+    let alone = Passage {
+        aim: &free,
+        ..owned.passage(plan)
+    };
+    let time = ticks.time(plan.tick());
     RotorId::BOTH.into_iter().all(|id| {
         let rotor = plan.rig.rotor(id);
-        plan.move_of(index, id).is_some_and(|one| {
-            let time = one.ticks.time(plan.tick());
-            let profile = Profile::new(&one.shape, (&one.from, &one.to), &Turns::zero(), &time);
-            profile.within(&Limits::of(rotor)) && !profile.turns_back(rotor.turns.value)
-        })
+        let ends = (owned.from.of(id), owned.to.of(id));
+        let profile = Profile::new(&alone.shape(id, ticks), ends, &Turns::zero(), &time);
+        profile.within(&Limits::of(rotor)) && !profile.turns_back(rotor.turns.value)
     })
 }
 
