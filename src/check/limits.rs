@@ -69,8 +69,10 @@ impl<'a> Judge<'a> {
         if fits {
             return;
         }
-        for breach in real(plan, index, no_way) {
-            let seam = closes && law_alone_fits(plan, &owned, leg.ticks);
+        let seam = closes && law_alone_fits(plan, &owned, leg.ticks);
+        // A seam that is too short is one finding, whatever it breaks first.
+        let most = if seam { 1 } else { usize::MAX };
+        for breach in real(plan, index, no_way).into_iter().take(most) {
             let code = if seam { Code::LoopSeam } else { breach.code };
             let place = transition_place(plan, leg.kind, leg.written);
             let shortest = &mut self.shortest;
