@@ -125,6 +125,19 @@ fn last_of(pair: Pair<'_, Rule>, rule: Rule) -> Option<Pair<'_, Rule>> {
         .last()
 }
 
+/// What follows `run-up` or `run-down`; alone they are `fastest`. `None` where it does not read (reported).
+pub(super) fn run(reader: &mut Reader<'_>, pair: Pair<'_, Rule>) -> Option<Morph> {
+    if pair.as_rule() == Rule::EOI {
+        return Some(Morph {
+            length: Length::Fastest { at_least: None },
+            law: None,
+            skew: None,
+            dark: None,
+        });
+    }
+    morph(reader, pair)
+}
+
 /// A pair `morph` or `run`; each option at most once.
 pub(super) fn morph(reader: &mut Reader<'_>, pair: Pair<'_, Rule>) -> Option<Morph> {
     let mut length = None;

@@ -335,12 +335,12 @@ impl<'t> Parser<'t> {
                 Statement::Usual(Box::new(Spanned::new(clauses, span)))
             }
             Rule::run_up_line => {
-                let morph = clauses::morph(reader, inner.next()?);
-                Statement::RunUp(Box::new(Spanned::new(morph, span)))
+                let run = clauses::run(reader, inner.next()?);
+                Statement::RunUp(Box::new(Spanned::new(run, span)))
             }
             Rule::run_down_line => {
-                let morph = clauses::morph(reader, inner.next()?);
-                Statement::RunDown(Box::new(Spanned::new(morph, span)))
+                let run = clauses::run(reader, inner.next()?);
+                Statement::RunDown(Box::new(Spanned::new(run, span)))
             }
             Rule::loop_line => {
                 let morph = inner.find(|inner| inner.as_rule() == Rule::morph);
