@@ -22,7 +22,8 @@ pub enum Form {
     /// For people, with an excerpt of each place.
     #[default]
     Text,
-    /// phasewright's own JSON, documented at [`Form::Json`]'s writer in this module.
+    /// phasewright's own JSON: one object with `format` (`"phasewright findings"`), `version` (1), `errors`, `warnings`,
+    /// `notes`, `left_out` and `findings`; see `docs/commands.md`.
     Json,
     /// SARIF 2.1.0, the OASIS standard for results of checkers.
     Sarif,
