@@ -59,12 +59,16 @@ impl<'a> Judge<'a> {
         };
         let spot = (leg.kind, before(plan, index), leg.written);
         let closes = plan.closes(index);
+        let known = (spot, closes, leg.ticks);
+        if self.fits.get(&known) == Some(&true) {
+            return;
+        }
         let Some(owned) = owned(plan, spot, closes) else {
             return;
         };
         let fits = *self
             .fits
-            .entry((spot, closes, leg.ticks))
+            .entry(known)
             .or_insert_with(|| owned.passage(plan).fits(leg.ticks));
         if fits {
             return;

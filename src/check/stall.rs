@@ -2,7 +2,7 @@
 
 use super::gather::Gather;
 use super::transition_place;
-use super::words::{limit, speed};
+use super::words::speed;
 use crate::exact::{Speed, decimal, from_f64};
 use crate::finding::{Code, Finding, Severity};
 use crate::motion::profile::Profile;
@@ -40,7 +40,7 @@ impl<'a> Judge<'a> {
                 .filter_map(|id| {
                     let seconds = from_f64(time_below(plan, index, *id))?;
                     let stall = &plan.rig.rotor(*id).stall_speed.value;
-                    let shown = limit(&decimal(&seconds, 3).parse().unwrap_or(seconds));
+                    let shown = decimal(&seconds, 3);
                     Some(format!(
                         "rotor {} spends {shown} s below its stall speed of {}",
                         id.name(),

@@ -5,11 +5,13 @@ use super::passage::{Aim, Passage};
 use super::schedule::{Remark, Rounded, Schedule, Slot, ends, schedule};
 use super::speeds::CueSpeeds;
 use super::{Leg, LegKind, Plan};
-use crate::exact::{GridPhase, Rational, Turns, round_half_up, whole};
-use crate::motion::{Law, Shape};
-use crate::rig::{Pair, Rig};
+use crate::exact::{GridPhase, Rational, Ticks, Turns, round_half_up, whole};
+use crate::motion::Shape;
+use crate::rig::{Pair, Rig, RotorId, Turning};
 use crate::show::{Ending, Show, WrittenCue};
 use num_traits::ToPrimitive;
+use std::collections::BTreeMap;
+use std::collections::btree_map::Entry;
 use std::sync::Arc;
 
 /// A plan as far as it could be made.
@@ -69,6 +71,7 @@ pub fn draft(show: &Arc<Show>, rig: &Arc<Rig>, from: Option<u32>) -> Draft {
             rounded,
             complete,
         },
+        gains: BTreeMap::new(),
     };
     let last = slots.len().saturating_sub(1);
     for (index, slot) in slots.iter().enumerate() {
@@ -153,14 +156,57 @@ fn turned(
     }
 }
 
+/// What is alike in every play of a transition: its kind, the hold before and its ticks, the cue, its own ticks.
+type Passed = (LegKind, Option<(u32, Ticks)>, u32, Ticks);
+
 struct Lander {
     draft: Draft,
+    /// Mirror turns through a hold and the transition after it, found once for all its plays.
+    gains: BTreeMap<Passed, Pair<Turns>>,
+}
+
+/// Unwrapped mirror phases to which the speeds alone would lead: from where the hold before landed, through that hold
+/// and the transition, v·t + v0·T + Δv·T·S(1).
+fn natural(
+    plan: &Plan,
+    gains: &mut BTreeMap<Passed, Pair<Turns>>,
+    slot: &Slot,
+) -> Option<Pair<Turns>> {
+    let hold = plan.legs.last();
+    let held = hold.map(|hold| (hold.written, hold.ticks));
+    let gain = match gains.entry((slot.kind, held, slot.written, slot.ticks)) {
+        Entry::Occupied(known) => known.into_mut(),
+        Entry::Vacant(new) => {
+            new.insert(gain(plan, slot, hold.map_or(Ticks(0), |hold| hold.ticks))?)
+        }
+    };
+    Some(Pair::each(|id| {
+        let start = hold.map_or_else(
+            || plan.rig.rotor(id).index_angle(),
+            |hold| hold.landing.of(id).turns(),
+        );
+        &start + gain.of(id)
+    }))
+}
+
+/// Mirror turns that the speeds alone give in the hold before a transition, of `held` ticks, and in the transition.
+fn gain(plan: &Plan, slot: &Slot, held: Ticks) -> Option<Pair<Turns>> {
+    let (hold, time) = (held.time(plan.tick()), slot.ticks.time(plan.tick()));
+    let (from, to) = ends(&plan.speeds, slot.kind, slot.before, slot.written)?;
+    let law = &plan.transition_for(slot.kind, slot.written)?.law;
+    // An `scurve` is symmetric whatever its share.
+    let integral = Shape::Law(law.clone()).integral();
+    Some(Pair::each(|id| {
+        let (from, to) = (from.of(id), to.of(id));
+        let changed = (to - from).over(&time).times(&integral);
+        let motor = &(&from.over(&hold) + &from.over(&time)) + &changed;
+        motor.times(&plan.rig.rotor(id).motor_per_mirror().recip())
+    }))
 }
 
 impl Lander {
     fn add(&mut self, slot: &Slot, closes: bool) -> Option<()> {
         let plan = &self.draft.plan;
-        let index = plan.legs.len();
         let start = plan.total();
         let speeds = plan.speeds.get(slot.written as usize)?.as_ref()?;
         let beam = level(plan, slot);
@@ -181,7 +227,7 @@ impl Lander {
                 plan.legs.last()?.landing
             }
         } else {
-            let natural = self.natural(index, slot)?;
+            let natural = natural(plan, &mut self.gains, slot)?;
             if slot.kind == LegKind::RunDown {
                 let rest = Pair {
                     a: landing::at_rest(&plan.rig.rotors.a, &natural.a)?,
@@ -216,28 +262,6 @@ impl Lander {
         }
     }
 
-    /// Unwrapped mirror phases to which the speeds alone would lead: start + v0·T + Δv·T·S(1).
-    fn natural(&self, index: usize, slot: &Slot) -> Option<Pair<Turns>> {
-        let plan = &self.draft.plan;
-        let time = slot.ticks.time(plan.tick());
-        let (from, to) = ends(&plan.speeds, slot.kind, slot.before, slot.written)?;
-        let law = &self.transition_of(slot)?;
-        Some(Pair::each(|id| {
-            // An `scurve` is symmetric whatever its share.
-            let integral = Shape::Law(law.clone()).integral();
-            let (from, to) = (from.of(id), to.of(id));
-            let change = (to - from).over(&time).times(&integral);
-            let motor = &(&plan.phase_before(index, id) + &from.over(&time)) + &change;
-            plan.rig.rotor(id).mirror_phase(&motor)
-        }))
-    }
-
-    fn transition_of(&self, slot: &Slot) -> Option<Law> {
-        let plan = &self.draft.plan;
-        plan.transition_for(slot.kind, slot.written)
-            .map(|transition| transition.law.clone())
-    }
-
     /// Where a morph into a cue lands, and whether every one-way rotor keeps its way.
     fn pose(
         &self,
@@ -245,23 +269,12 @@ impl Lander {
         speeds: &CueSpeeds,
         natural: &Pair<Turns>,
     ) -> Option<(Pair<GridPhase>, bool)> {
-        let plan = &self.draft.plan;
         let Some(pose) = &speeds.pose else {
             return Some((landing::free(natural)?, true));
         };
         let shares = &speeds.shares;
         let delta = landing::gap(shares.ratio, pose, natural);
-        let law = self.transition_of(slot)?;
-        let (from, to) = ends(&plan.speeds, slot.kind, slot.before, slot.written)?;
-        let aim = Aim::Pose(shares.clone());
-        let passage = Passage {
-            rig: &plan.rig,
-            law: &law,
-            from: &from,
-            to: &to,
-            aim: &aim,
-        };
-        let chosen = passage.correction(shares, slot.ticks, &delta);
+        let chosen = self.correction(slot, speeds, &delta)?;
         let way = chosen.is_some();
         let correction = chosen.unwrap_or_else(|| shares.split_of(&delta));
         let ends = Pair {
@@ -269,6 +282,31 @@ impl Lander {
             b: &natural.b + &correction.b,
         };
         Some((landing::on_grid(shares.ratio, pose, &ends)?, way))
+    }
+
+    /// The correction for the gap δ, or (inside) none where every candidate turns a one-way rotor back.
+    fn correction(
+        &self,
+        slot: &Slot,
+        speeds: &CueSpeeds,
+        delta: &Rational,
+    ) -> Option<Option<Pair<Turns>>> {
+        let plan = &self.draft.plan;
+        let shares = &speeds.shares;
+        let both_ways = |id: RotorId| plan.rig.rotor(id).turns.value == Turning::Both;
+        if RotorId::BOTH.into_iter().all(both_ways) {
+            return Some(Some(shares.split_of(delta)));
+        }
+        let (from, to) = ends(&plan.speeds, slot.kind, slot.before, slot.written)?;
+        let aim = Aim::Pose(shares.clone());
+        let passage = Passage {
+            rig: &plan.rig,
+            law: &plan.transition_for(slot.kind, slot.written)?.law,
+            from: &from,
+            to: &to,
+            aim: &aim,
+        };
+        Some(passage.correction(shares, slot.ticks, delta))
     }
 }
 
