@@ -162,6 +162,7 @@ fn whole_rule(rule: Rule) -> Rule {
         | Rule::ratio_form
         | Rule::figure_name => Rule::figure,
         Rule::number => Rule::quantity,
+        Rule::reserved => Rule::name,
         other => other,
     }
 }

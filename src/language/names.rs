@@ -1,8 +1,8 @@
 //! The names of a show: figures and parts, who defines them, and figures that are other names for figures.
 
+use super::diagnose::clip;
 use super::figures::{named, names as built_in_names};
 use super::findings::Findings;
-use super::grammar::{Rule, parse};
 use super::nearest::Nearest;
 use super::span::{Span, Spanned};
 use super::tree::{FigureDefinition, FigureNode};
@@ -17,24 +17,9 @@ type Meaning = Option<(Form, Ratio)>;
 pub(super) struct Figures<'s> {
     text: &'s str,
     definitions: Vec<&'s FigureDefinition>,
-    by_name: BTreeMap<&'s str, usize>,
+    /// The first definition of a name, and the name there.
+    by_name: BTreeMap<&'s str, (usize, Span)>,
     meanings: Vec<Meaning>,
-}
-
-/// Whether the word at `span` cannot be a name; reported if so.
-pub(super) fn reserved(text: &str, span: Span, what: &str, findings: &mut Findings) -> bool {
-    let name = span.of(text);
-    // The rule takes a name that merely begins with a reserved word for none, since it asks for the end of the word.
-    let taken = parse(Rule::reserved, name).is_ok();
-    if taken {
-        findings.add_help(
-            Code::TextNameTaken,
-            span,
-            format!("`{name}` is a word of the language and cannot name a {what}"),
-            format!("e.g. `{name}-1`"),
-        );
-    }
-    taken
 }
 
 impl<'s> Figures<'s> {
@@ -47,25 +32,25 @@ impl<'s> Figures<'s> {
     ) -> Self {
         let mut by_name = BTreeMap::new();
         for (index, definition) in definitions.iter().enumerate() {
-            let name = definition.name.of(text);
+            let Some(span) = definition.name else {
+                continue;
+            };
+            let name = span.of(text);
             if named(name).is_some() {
                 findings.add_help(
                     Code::TextNameTaken,
-                    definition.name,
+                    span,
                     format!("`{name}` is a built-in figure"),
                     format!("e.g. `figure {name}-1 = …`"),
                 );
-            } else if !reserved(text, definition.name, "figure", findings) {
-                match by_name
-                    .get(name)
-                    .and_then(|first: &usize| definitions.get(*first))
-                {
-                    Some(first) => {
-                        findings.twice(definition.name, first.name, &format!("figure `{name}`"));
-                    }
-                    None => {
-                        by_name.insert(name, index);
-                    }
+                continue;
+            }
+            match by_name.get(name) {
+                Some((_, first)) => {
+                    findings.twice(span, *first, &format!("figure `{}`", clip(name)));
+                }
+                None => {
+                    by_name.insert(name, (index, span));
                 }
             }
         }
@@ -116,7 +101,7 @@ impl<'s> Figures<'s> {
                     break Some((Form::Named(curve), curve.ratio()));
                 }
                 match self.by_name.get(name) {
-                    Some(next) => at = *next,
+                    Some((next, _)) => at = *next,
                     None => {
                         self.report_unknown(definition.figure.span, findings, nearest);
                         break None;
@@ -135,7 +120,10 @@ impl<'s> Figures<'s> {
     }
 
     fn report_ring(&self, first: &FigureDefinition, path: &[usize], findings: &mut Findings) {
-        let name = first.name.of(self.text);
+        // Whatever lies on a ring is reached by its name, so it has one.
+        let name_of =
+            |figure: &FigureDefinition| clip(figure.name.unwrap_or_default().of(self.text));
+        let name = name_of(first);
         let last = path.last().and_then(|index| self.definitions.get(*index));
         let mut finding = Finding::new(
             Code::TextCircular,
@@ -146,13 +134,16 @@ impl<'s> Figures<'s> {
         if let Some(last) = last.filter(|last| last.name != first.name) {
             finding = finding.also(
                 findings.place(last.figure.span),
-                format!("by way of `{}`", last.name.of(self.text)),
+                format!("by way of `{}`", name_of(last)),
             );
         }
         findings.push(finding);
     }
 
     fn report_unknown(&self, span: Span, findings: &mut Findings, nearest: &mut Nearest) {
+        if findings.over() {
+            return;
+        }
         let name = span.of(self.text);
         let forms = match name {
             "rose" => Some("a rose has its number behind it: `rose 5/3`"),
@@ -167,21 +158,21 @@ impl<'s> Figures<'s> {
                 let defined = self
                     .definitions
                     .iter()
-                    .map(|known| known.name.of(self.text));
+                    .filter_map(|known| known.name.map(|name| name.of(self.text)));
                 let built_in: [&'s str; 4] = ["rose", "ring", "star", "ratio"];
                 let known = defined
                     .chain(built_in)
                     .chain(built_in_names().map(|name| -> &'s str { name }));
                 match nearest.find(name, known) {
                     Some(near) => format!("did you mean `{near}`?"),
-                    None => format!("define it: `figure {} = …`", super::diagnose::clip(name)),
+                    None => format!("define it: `figure {} = …`", clip(name)),
                 }
             }
         };
         findings.add_help(
             Code::TextUnknownFigure,
             span,
-            format!("there is no figure `{}`", super::diagnose::clip(name)),
+            format!("there is no figure `{}`", clip(name)),
             help,
         );
     }
@@ -202,7 +193,7 @@ impl<'s> Figures<'s> {
                     return Some((Form::Named(curve), curve.ratio()));
                 }
                 match self.by_name.get(name) {
-                    Some(index) => self.meanings.get(*index).cloned().flatten(),
+                    Some((index, _)) => self.meanings.get(*index).cloned().flatten(),
                     None => {
                         self.report_unknown(figure.span, findings, nearest);
                         None

@@ -1,9 +1,9 @@
 //! The syntax tree of a show → the show: every name looked up, every clause that a cue leaves out filled in.
 
-use super::diagnose::first_word;
+use super::diagnose::{clip, first_word};
 use super::findings::Findings;
 use super::merge::{Usual, run_transition};
-use super::names::{Figures, reserved};
+use super::names::Figures;
 use super::nearest::Nearest;
 use super::script::ShowScript;
 use super::span::{Span, Spanned};
@@ -58,7 +58,8 @@ struct Resolver<'s> {
     findings: Findings,
     nearest: Nearest,
     cues: Vec<WrittenCue>,
-    parts_by_name: BTreeMap<&'s str, usize>,
+    /// The first part of a name, and the name there.
+    parts_by_name: BTreeMap<&'s str, (usize, Span)>,
     parts: Vec<Part>,
     next_part: usize,
 }
@@ -212,28 +213,22 @@ impl<'s> Resolver<'s> {
     fn name_parts(&mut self, parts: &[&'s PartNode]) {
         let text = &self.script.text;
         for (index, part) in parts.iter().enumerate() {
-            let name = part.name.of(text);
-            if reserved(text, part.name, "part", &mut self.findings) {
-                continue;
-            }
-            match self
-                .parts_by_name
-                .get(name)
-                .and_then(|first| parts.get(*first))
-            {
-                Some(first) => {
+            let Some(span) = part.name else { continue };
+            let name = span.of(text);
+            match self.parts_by_name.get(name) {
+                Some((_, first)) => {
                     self.findings
-                        .twice(part.name, first.name, &format!("part `{name}`"));
+                        .twice(span, *first, &format!("part `{}`", clip(name)));
                 }
                 None => {
-                    self.parts_by_name.insert(name, index);
+                    self.parts_by_name.insert(name, (index, span));
                 }
             }
         }
         self.parts = parts
             .iter()
             .map(|part| Part {
-                name: part.name,
+                name: part.name.unwrap_or_default(),
                 steps: Vec::new(),
             })
             .collect();
@@ -315,18 +310,18 @@ impl<'s> Resolver<'s> {
     fn play(&mut self, node: &Spanned<Span>) -> Step {
         let text = &self.script.text;
         let name = node.value.of(text);
-        if let Some(part) = self.parts_by_name.get(name) {
+        if let Some((part, _)) = self.parts_by_name.get(name) {
             return Step::Play(*part, node.value);
         }
         let known = self.parts.iter().map(|part| part.name.of(text));
         let help = match self.nearest.find(name, known) {
             Some(near) => format!("did you mean `{near}`?"),
-            None => format!("define it: `part {} {{ … }}`", super::diagnose::clip(name)),
+            None => format!("define it: `part {} {{ … }}`", clip(name)),
         };
         self.findings.add_help(
             Code::TextUnknownPart,
             node.value,
-            format!("there is no part `{}`", super::diagnose::clip(name)),
+            format!("there is no part `{}`", clip(name)),
             help,
         );
         let place = node.span.place(self.script.file);

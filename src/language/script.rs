@@ -298,12 +298,12 @@ impl<'t> Parser<'t> {
         let defined = Span::new(start, start + first_word(rest.trim_start()).len());
         let statement = match name {
             "figure" if defined.len() > 0 => Statement::Figure(Box::new(FigureDefinition {
-                name: defined,
+                name: Some(defined),
                 figure: Spanned::new(FigureNode::Broken, span),
             })),
             "part" if defined.len() > 0 => Statement::Part(Box::new(PartNode {
                 span,
-                name: defined,
+                name: Some(defined),
                 body,
             })),
             "usual" => Statement::Usual(Box::new(Spanned::new(Clauses::none(true), span))),
@@ -325,7 +325,7 @@ impl<'t> Parser<'t> {
             Rule::show_line => Statement::Title(reader.quoted(inner.next()?)),
             Rule::rig_line => Statement::Rig(reader.quoted(inner.next()?)),
             Rule::figure_line => {
-                let name = reader.span(&inner.next()?);
+                let name = defined_name(reader, &inner.next()?, "figure");
                 let figure = inner.find(|inner| inner.as_rule() == Rule::figure)?;
                 let figure = figures::read(reader, figure);
                 Statement::Figure(Box::new(FigureDefinition { name, figure }))
@@ -365,7 +365,7 @@ impl<'t> Parser<'t> {
             }
             Rule::part_line => Statement::Part(Box::new(PartNode {
                 span,
-                name: reader.span(&inner.next()?),
+                name: defined_name(reader, &inner.next()?, "part"),
                 body: Vec::new(),
             })),
             Rule::repeat_line => {
@@ -399,4 +399,20 @@ fn times(reader: &mut Reader<'_>, pair: &Pair<'_, Rule>) -> Option<Spanned<u64>>
     }
     let whole = u64::try_from(whole?).ok()?;
     Some(Spanned::new(whole, times.span))
+}
+
+/// The name that a statement defines; a word that cannot be one is reported.
+fn defined_name(reader: &mut Reader<'_>, pair: &Pair<'_, Rule>, what: &str) -> Option<Span> {
+    let span = reader.span(pair);
+    if pair.as_rule() != Rule::reserved {
+        return Some(span);
+    }
+    let name = pair.as_str();
+    reader.findings.add_help(
+        Code::TextNameTaken,
+        span,
+        format!("`{name}` is a word of the language and cannot name a {what}"),
+        format!("e.g. `{name}-1`"),
+    );
+    None
 }

@@ -134,7 +134,8 @@ pub(super) enum Statement {
 /// `figure NAME = …`
 #[derive(Clone, Debug)]
 pub(super) struct FigureDefinition {
-    pub(super) name: Span,
+    /// `None` where it is a word that cannot be a name (reported).
+    pub(super) name: Option<Span>,
     pub(super) figure: Spanned<FigureNode>,
 }
 
@@ -150,7 +151,8 @@ pub(super) struct CueNode {
 #[derive(Clone, Debug)]
 pub(super) struct PartNode {
     pub(super) span: Span,
-    pub(super) name: Span,
+    /// `None` where it is a word that cannot be a name (reported).
+    pub(super) name: Option<Span>,
     pub(super) body: Vec<Statement>,
 }
 
