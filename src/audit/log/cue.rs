@@ -180,15 +180,6 @@ impl Scene<'_> {
             LogKind::Positions => self.phase_line(passes),
             LogKind::Pulses => self.combined(&lines),
         };
-        let rpm = Pair::each(|rotor| {
-            lines.of(rotor).as_ref().map(|line| Measured {
-                value: 60.0 * (self.hold.motor.of(rotor) + line.slope),
-                error: 60.0
-                    * line
-                        .error
-                        .hypot(self.hold.motor.of(rotor) * self.rate_error),
-            })
-        });
         let ratio = self.ratio(&lines, phase.as_ref());
         let (p, q) = self.hold.terms;
         let most = SMALL.max(i64::from(p.abs())).max(i64::from(q.abs()));
@@ -212,7 +203,7 @@ impl Scene<'_> {
             ),
             used: phase.as_ref().map_or(0, |phase| phase.used),
             removed: phase.as_ref().map_or(0, |phase| phase.removed),
-            rpm,
+            rpm: self.rpm(&lines),
             planned_rpm: Pair::each(|rotor| 60.0 * self.hold.motor.of(rotor)),
             nearest: match (q, ratio) {
                 (0, _) => None,
@@ -222,17 +213,7 @@ impl Scene<'_> {
                 _ => None,
             },
             ratio,
-            drift_deg_per_min: phase.as_ref().map(|phase| {
-                let scale = self.hold.pose_per_phase * 360.0 * 60.0;
-                Measured {
-                    value: phase.slope * scale,
-                    // Where the clock's rate is not known well, neither is the length of a minute.
-                    error: phase
-                        .error
-                        .hypot((phase.slope.abs() + self.spin()) * self.rate_error)
-                        * scale.abs(),
-                }
-            }),
+            drift_deg_per_min: phase.as_ref().map(|phase| self.drift(phase)),
             pose_off_deg: self.pose_off(&lines),
             following: Pair::each(|rotor| following(passes, rotor)),
             lost: 0,
@@ -240,6 +221,27 @@ impl Scene<'_> {
             doubled: 0,
             trace: self.trace(passes),
             stands: self.stands(passes, stretches, &lines),
+        }
+    }
+
+    fn rpm(&self, lines: &Pair<Option<Line>>) -> Pair<Option<Measured>> {
+        Pair::each(|rotor| {
+            let line = lines.of(rotor).as_ref()?;
+            let planned = self.hold.motor.of(rotor);
+            Some(Measured {
+                value: 60.0 * (planned + line.slope),
+                error: 60.0 * line.error.hypot(planned * self.rate_error),
+            })
+        })
+    }
+
+    fn drift(&self, phase: &PhaseLine) -> Measured {
+        let scale = self.hold.pose_per_phase * 360.0 * 60.0;
+        // Where the clock's rate is not known well, neither is the length of a minute.
+        let clock = (phase.slope.abs() + self.spin()) * self.rate_error;
+        Measured {
+            value: phase.slope * scale,
+            error: phase.error.hypot(clock) * scale.abs(),
         }
     }
 

@@ -32,6 +32,7 @@ mod ratio;
 mod read;
 mod robust;
 mod segment;
+mod student;
 mod text;
 mod track;
 

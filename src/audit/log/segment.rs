@@ -156,17 +156,7 @@ pub(super) fn report(plan: &Plan, model: &Model, log: &Log, placed: Placed) -> L
     let mut cues = cues(plan, model, log.kind, log.time_step, &stretches);
     let (lost, late, doubled) = attribute(plan, model, &clocks, &events, &mut cues);
     let jumps = jumps(&cues, origin);
-    for cue in &mut cues {
-        cue.span_s.0 += origin;
-        cue.span_s.1 += origin;
-        for (time, _) in &mut cue.trace {
-            *time += origin;
-        }
-        for stand in &mut cue.stands {
-            stand.from += origin;
-            stand.until += origin;
-        }
-    }
+    by_the_log(&mut cues, origin);
     let stepped_away: u64 = lost_in_steps(log, &stepped);
     LogReport {
         kind: log.kind,
@@ -190,6 +180,21 @@ pub(super) fn report(plan: &Plan, model: &Model, log: &Log, placed: Placed) -> L
         doubled: log.cadence.doubled.max(doubled),
         cues,
         jumps,
+    }
+}
+
+/// Times as the log writes them.
+fn by_the_log(cues: &mut [CueReport], origin: f64) {
+    for cue in cues {
+        cue.span_s.0 += origin;
+        cue.span_s.1 += origin;
+        for (time, _) in &mut cue.trace {
+            *time += origin;
+        }
+        for stand in &mut cue.stands {
+            stand.from += origin;
+            stand.until += origin;
+        }
     }
 }
 

@@ -88,19 +88,7 @@ fn one(out: &mut String, cue: &CueReport) -> std::fmt::Result {
         "Cue {}{name}: {} ({p}:{q}), seen {times}, from {:.3} s",
         cue.cue, cue.figure, cue.span_s.0
     )?;
-    for (letter, rpm, planned) in [
-        ("a", cue.rpm.a, cue.planned_rpm.a),
-        ("b", cue.rpm.b, cue.planned_rpm.b),
-    ] {
-        match rpm {
-            Some(rpm) => writeln!(
-                out,
-                "  motor {letter}   {} rpm, planned {planned:.6}",
-                signed(rpm)
-            )?,
-            None => writeln!(out, "  motor {letter}   not seen, planned {planned:.6} rpm")?,
-        }
-    }
+    motors(out, cue)?;
     if let (Some(ratio), Some((near_p, near_q))) = (cue.ratio, cue.nearest) {
         writeln!(
             out,
@@ -136,6 +124,23 @@ fn one(out: &mut String, cue: &CueReport) -> std::fmt::Result {
         "  samples   {} used, {} set aside; {} lost, {} late, {} doubled",
         cue.used, cue.removed, cue.lost, cue.late, cue.doubled
     )
+}
+
+fn motors(out: &mut String, cue: &CueReport) -> std::fmt::Result {
+    for (letter, rpm, planned) in [
+        ("a", cue.rpm.a, cue.planned_rpm.a),
+        ("b", cue.rpm.b, cue.planned_rpm.b),
+    ] {
+        match rpm {
+            Some(rpm) => writeln!(
+                out,
+                "  motor {letter}   {} rpm, planned {planned:.6}",
+                signed(rpm)
+            )?,
+            None => writeln!(out, "  motor {letter}   not seen, planned {planned:.6} rpm")?,
+        }
+    }
+    Ok(())
 }
 
 fn signed(measured: Measured) -> String {
