@@ -6,9 +6,12 @@ mod flicker;
 mod gather;
 mod hold;
 mod limits;
+mod optics;
+mod optics_shape;
 mod peaks;
 mod pose;
 mod stall;
+mod still;
 mod time;
 mod words;
 
@@ -55,6 +58,7 @@ pub fn planned(
                     .any(|finding| finding.severity == Severity::Error);
             }
             found.extend(flicker::check(&standing));
+            optics_shape::check(cue, count, rig, &mut gather);
             for mut finding in found {
                 finding.count = count;
                 gather.add(finding);
@@ -62,6 +66,8 @@ pub fn planned(
         }
     }
     transitions(&draft, &faulty, &mut gather);
+    optics::check(rig, &mut gather);
+    still::check(&draft, |leg| judged(&draft, &faulty, leg), &mut gather);
     (draft.complete.then_some(draft.plan), gather.into_findings())
 }
 
@@ -108,22 +114,27 @@ fn transitions(draft: &Draft, faulty: &[bool], gather: &mut Gather) {
     let mut limits = limits::Judge::new(plan);
     let mut stall = stall::Judge::new(plan);
     for (index, leg) in plan.legs.iter().enumerate() {
-        if leg.kind == LegKind::Hold || is_faulty(leg.written) {
-            continue;
-        }
-        let before = index
-            .checked_sub(1)
-            .and_then(|before| plan.legs.get(before));
-        let from_gap =
-            leg.kind != LegKind::RunUp && before.is_none_or(|before| is_faulty(before.written));
-        let sound = draft.sound.get(index).copied().unwrap_or(false);
-        if from_gap || !sound {
+        if leg.kind == LegKind::Hold || !judged(draft, faulty, index) {
             continue;
         }
         let no_way = draft.no_way.get(index).copied().unwrap_or(false);
         limits.check(index, no_way, gather);
         stall.check(index, gather);
     }
+}
+
+/// Whether a leg can be judged: the cues at both its ends are without errors of their own, and its landing is known.
+fn judged(draft: &Draft, faulty: &[bool], index: usize) -> bool {
+    let legs = &draft.plan.legs;
+    let is_faulty = |written: u32| faulty.get(written as usize).copied().unwrap_or(true);
+    let Some(leg) = legs.get(index) else {
+        return false;
+    };
+    let before = index.checked_sub(1).and_then(|before| legs.get(before));
+    let from_gap = !matches!(leg.kind, LegKind::RunUp | LegKind::Hold)
+        && before.is_none_or(|before| is_faulty(before.written));
+    let sound = draft.sound.get(index).copied().unwrap_or(false);
+    sound && !is_faulty(leg.written) && !from_gap
 }
 
 /// Where a transition can be mended: its own clause or statement; where a cue leaves its morph out, the cue.

@@ -117,4 +117,12 @@ codes! {
     DriftJump, "drift/jump", Warning;
     /// A figure that began in another pose than planned.
     DriftOffset, "drift/offset", Warning;
+    /// The lit spot rests on the wall.
+    StillSpot, "still/spot", Warning;
+    /// The beam leaves the second mirror.
+    OpticsWalkOff, "optics/walk-off", Warning;
+    /// A curve is not drawn in its true shape.
+    OpticsShape, "optics/shape", Note;
+    /// The rig does not tell what a check of the light needs.
+    OpticsSkipped, "optics/skipped", Note;
 }

@@ -4,8 +4,9 @@
 //! Approximations to the CIE XYZ Color Matching Functions", *Journal of Computer Graphics Techniques* 2(2), 2013
 //! (multi-lobe fit, constants from memory), then XYZ to linear sRGB (IEC 61966-2-1).
 //!
-//! No spectral colour lies inside what a screen can show: it is brought in by adding white until nothing is negative, then
-//! scaled so that the strongest channel is full. Hue is kept, brightness is the picture's to give.
+//! No spectral colour lies inside what a screen can show: what is negative is cut, the strongest channel is made full, and
+//! a twentieth of white is added, without which deep blue and deep red could not be seen on black. (Adding white until
+//! nothing is negative would turn a green laser teal.) Brightness is the picture's to give.
 
 /// A colour in sRGB, each channel 0 to 255.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -32,6 +33,9 @@ pub const UNKNOWN: Rgb = Rgb {
     g: 0xf4,
     b: 0xff,
 };
+
+/// White that is added to a full colour, of its strongest channel, in linear light.
+const WHITE: f64 = 0.05;
 
 /// CIE 1931 x̄, ȳ, z̄ at a wavelength in nanometres.
 #[must_use]
@@ -60,9 +64,8 @@ pub fn of_wavelength(wavelength: f64) -> Rgb {
         -0.968_930_7 * x + 1.875_756_1 * y + 0.041_517_5 * z,
         0.055_710_1 * x - 0.204_021_1 * y + 1.056_995_9 * z,
     ];
-    let least = linear.into_iter().fold(0.0, f64::min);
-    let most = linear.into_iter().fold(0.0, f64::max) - least;
-    let channel = |value: f64| gamma((value - least) / most.max(1e-9));
+    let most = linear.into_iter().fold(0.0, f64::max).max(1e-9);
+    let channel = |value: f64| gamma((value.max(0.0) / most + WHITE) / (1.0 + WHITE));
     let [r, g, b] = linear.map(channel);
     Rgb { r, g, b }
 }

@@ -10,15 +10,15 @@
 //! # Brightness
 //!
 //! The light that lands on a length of the curve goes with the time that the spot spends there: the density is
-//! 1/(speed · length of the window). The eye's impression follows Stevens' power law, brightness ∝ light^(1/3) (S. S.
+//! 1/(speed · repeat period). The eye's impression follows Stevens' power law, brightness ∝ light^(1/3) (S. S.
 //! Stevens, "To Honor Fechner and Repeal His Law", *Science* 133, 1961, from memory; the exponent for an extended target in the
-//! dark). Full brightness is that of a circle of half the largest radius drawn once; so long figures are dimmer than short
+//! dark). Full brightness is that of a circle of the largest radius drawn once; so long figures are dimmer than short
 //! ones, as on the wall, and turning points shine.
 
 use crate::optics::Optics;
 use crate::optics::path::LegPath;
 use kurbo::{CubicBez, ParamCurve, ParamCurveArclen, Point, Vec2};
-use std::f64::consts::{PI, TAU};
+use std::f64::consts::TAU;
 
 /// Steps of brightness; above the last there is [`HOT`].
 pub const LEVELS: u8 = 6;
@@ -49,12 +49,14 @@ pub struct Grain {
     pub width: f64,
 }
 
-/// The light from `from` to `to`, seconds from the start of a leg.
+/// The light from `from` to `to`, seconds from the start of a leg; `period` is the time in which a figure is drawn once, by
+/// which brightness is measured.
 #[must_use]
 pub fn collect(
     path: &LegPath,
     optics: &Optics,
     (from, to): (f64, f64),
+    period: f64,
     grain: Grain,
 ) -> Vec<Piece> {
     let window = to - from;
@@ -65,8 +67,8 @@ pub fn collect(
         path,
         optics,
         grain,
-        window,
-        full: PI * optics.extent(),
+        period,
+        full: TAU * optics.extent(),
     };
     let count = way.first_cut(from, to);
     let mut pieces = Vec::new();
@@ -85,7 +87,8 @@ struct Way<'a> {
     path: &'a LegPath,
     optics: &'a Optics,
     grain: Grain,
-    window: f64,
+    /// The time in which light is counted.
+    period: f64,
     /// The length that has full brightness.
     full: f64,
 }
@@ -177,7 +180,7 @@ impl Way<'_> {
 
     /// The brightness of a place where the spot has this speed.
     fn level(&self, speed: f64) -> u8 {
-        let density = self.full / (speed * self.window).max(f64::MIN_POSITIVE);
+        let density = self.full / (speed * self.period).max(f64::MIN_POSITIVE);
         let steps = libm::cbrt(density) * f64::from(LEVELS);
         if steps >= f64::from(LEVELS) * 1.35 {
             return HOT;
@@ -192,12 +195,16 @@ impl Way<'_> {
     }
 }
 
-/// The longest stretch of time that a still collects: one repeat period of the figure, at least 1/50 s, but not more turns
-/// than [`MOST_TURNS`].
+/// The time in which a figure is drawn once, in seconds, but not more turns of the faster mirror than [`MOST_TURNS`].
 #[must_use]
-pub fn window(repeat: f64, faster_mirror: f64) -> f64 {
-    let least = 1.0 / 50.0;
-    let period = if repeat > 0.0 { 1.0 / repeat } else { least };
+pub fn period(repeat: f64, faster_mirror: f64) -> f64 {
     let most = MOST_TURNS / faster_mirror.abs().max(1e-9);
-    period.max(least).min(most.max(least))
+    if repeat > 0.0 {
+        (1.0 / repeat).min(most)
+    } else {
+        SHORTEST.min(most)
+    }
 }
+
+/// The least time that the eye collects, in seconds.
+pub const SHORTEST: f64 = 1.0 / 50.0;

@@ -8,7 +8,7 @@ mod json;
 mod markdown;
 mod remarks;
 mod text;
-mod words;
+pub(crate) mod words;
 
 use crate::check::{Peak, Peaks, peaks};
 use crate::exact::{Rational, Seconds, Ticks, Turns, ratio, round_half_up, whole};

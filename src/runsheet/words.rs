@@ -27,7 +27,7 @@ pub(super) const CAUTIONS: [&str; 3] = [
 ];
 
 /// `0:04:21.330`: hours, minutes, seconds, milliseconds, rounded half up.
-pub(super) fn clock(time: &Seconds) -> String {
+pub(crate) fn clock(time: &Seconds) -> String {
     clock_to(time.value(), 3)
 }
 
@@ -50,7 +50,7 @@ fn clock_to(time: &Rational, places: u32) -> String {
 }
 
 /// `12 s`, `4 min 21.33 s`, `8 h`.
-pub(super) fn duration(time: &Seconds) -> String {
+pub(crate) fn duration(time: &Seconds) -> String {
     let minute = whole(60);
     let minutes = (time.value() / &minute).floor();
     let seconds = time.value() - &minutes * &minute;
@@ -70,7 +70,7 @@ pub(super) fn duration(time: &Seconds) -> String {
 }
 
 /// The exact decimal, where it has at most this many places, else rounded to them.
-pub(super) fn short(value: &Rational, places: u32) -> String {
+pub(crate) fn short(value: &Rational, places: u32) -> String {
     exact_decimal(value, places).unwrap_or_else(|| decimal(value, places))
 }
 
@@ -123,7 +123,7 @@ pub(super) fn law(law: &Law) -> String {
 }
 
 /// `5 s quintic, dark`.
-pub(super) fn transition(transition: &Transition, time: &Seconds) -> String {
+pub(crate) fn transition(transition: &Transition, time: &Seconds) -> String {
     let dark = if transition.dark { ", dark" } else { "" };
     format!("{} {}{dark}", duration(time), law(&transition.law))
 }

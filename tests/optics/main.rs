@@ -7,6 +7,7 @@
 )]
 
 mod against_a_ray_tracer;
+mod checks;
 mod colour;
 mod path;
 mod reflection;

@@ -6,6 +6,9 @@
     clippy::panic
 )]
 
+mod light;
+mod look;
+mod pictures;
 mod scene;
 #[path = "../optics/show.rs"]
 mod show;
