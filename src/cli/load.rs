@@ -145,7 +145,8 @@ impl Loader {
     }
 
     /// Reads a rig; `named_at` is the `rig` statement that names it, if one does.
-    fn rig(
+    /// Reads a rig that the command line (or, at a place, a show) names; what is found goes to `findings`.
+    pub(super) fn rig(
         &mut self,
         path: &Path,
         named_at: Option<Place>,

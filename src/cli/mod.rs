@@ -7,10 +7,13 @@
 //! | 2 | wrong usage |
 
 mod audit;
+mod atlas;
 mod compile;
 mod deliver;
 mod explain;
+mod folder;
 mod load;
+mod preview;
 mod progress;
 mod report;
 mod runsheet;
@@ -107,8 +110,10 @@ enum Color {
 enum Command {
     Validate(validate::Validate),
     Compile(compile::Compile),
+    Preview(preview::Preview),
     Runsheet(runsheet::Runsheet),
     Audit(audit::Audit),
+    Atlas(atlas::Atlas),
     Explain(explain::Explain),
 }
 
@@ -148,8 +153,10 @@ pub fn run(arguments: impl IntoIterator<Item = OsString>, streams: &mut Streams)
     let result = match &arguments.command {
         Command::Validate(command) => command.run(common, streams),
         Command::Compile(command) => command.run(common, streams),
+        Command::Preview(command) => command.run(common, streams),
         Command::Runsheet(command) => command.run(common, streams),
         Command::Audit(command) => command.run(common, streams),
+        Command::Atlas(command) => command.run(common, streams),
         Command::Explain(command) => command.run(streams),
     };
     let result = result.and_then(|code| {

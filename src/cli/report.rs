@@ -47,7 +47,7 @@ pub(super) fn report(
     if common.quiet {
         findings.retain(|finding| finding.severity != Severity::Note);
     }
-    let color = color(common, target, streams);
+    let color = uses_color(common, target, streams);
     let out = match target {
         Target::Stdout => &mut streams.stdout,
         Target::Stderr => &mut streams.stderr,
@@ -65,7 +65,8 @@ pub(super) fn wants_words(common: &Common) -> bool {
     !common.quiet && Form::from(common.findings) == Form::Text
 }
 
-fn color(common: &Common, target: Target, streams: &Streams) -> bool {
+/// Whether colour is written to a stream.
+pub(super) fn uses_color(common: &Common, target: Target, streams: &Streams) -> bool {
     let terminal = match target {
         Target::Stdout => streams.stdout_is_terminal,
         Target::Stderr => streams.stderr_is_terminal,

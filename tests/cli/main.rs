@@ -12,6 +12,7 @@ mod compile;
 mod explain;
 mod inputs;
 mod pages;
+mod preview;
 mod runsheet;
 mod streams;
 mod usage;
