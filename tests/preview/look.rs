@@ -5,7 +5,6 @@ use phasewright::finding::ordered;
 use phasewright::preview::{Look, Show, atlas, cue, facts, png, sheet, terminal};
 use std::fs;
 use std::path::Path;
-use std::time::Instant;
 
 const SHOWS: [(&str, &str, &str); 6] = [
     (
@@ -49,21 +48,13 @@ fn look() {
         fs::create_dir_all(&folder).unwrap();
         let (plan, findings) = planned(show, rig);
         let show = Show::new(&plan, ordered(findings));
-        let start = Instant::now();
         let text = sheet::sheet(&show, &Look::default());
-        let svg = start.elapsed();
         fs::write(folder.join("sheet.svg"), &text).unwrap();
         fs::write(folder.join("sheet.png"), png::png(&text).unwrap()).unwrap();
-        println!(
-            "{name}: sheet {} bytes, svg {svg:?}, png {:?}",
-            text.len(),
-            start.elapsed()
-        );
         for subject in facts::subjects(&plan).iter().take(7) {
             let text = cue::picture(&show, subject, &Look::default());
             let file = folder.join(subject.file(&plan));
             fs::write(file.with_extension("png"), png::png(&text).unwrap()).unwrap();
-            println!("{}: {} bytes", file.display(), text.len());
             fs::write(file, text).unwrap();
         }
         let text = atlas::atlas(&plan.rig, 6, &Look::default());
