@@ -6,8 +6,8 @@
 //! | 1 | errors (with `--strict`, warnings too), or something could not be read or written |
 //! | 2 | wrong usage |
 
-mod audit;
 mod atlas;
+mod audit;
 mod compile;
 mod deliver;
 mod explain;
