@@ -32,7 +32,7 @@ pub(super) fn check(draft: &Draft, sound: impl Fn(usize) -> bool, gather: &mut G
     // Where the pose is fixed, a cue played again comes from the same speeds into the same picture.
     let mut seen: BTreeSet<(u32, Option<u32>)> = BTreeSet::new();
     for (index, leg) in plan.legs.iter().enumerate() {
-        if !lit(plan, leg) || !sound(index) || !slow(plan, index) {
+        if !lit(plan, leg) || !sound(index) {
             continue;
         }
         let before = (leg.kind != LegKind::Hold)
@@ -47,6 +47,9 @@ pub(super) fn check(draft: &Draft, sound: impl Fn(usize) -> bool, gather: &mut G
             .speeds_of(leg)
             .is_some_and(|speeds| speeds.pose.is_some());
         if fixed && !seen.insert((leg.written, before)) {
+            continue;
+        }
+        if !slow(plan, index) {
             continue;
         }
         let Some(rest) = rest(plan, &optics, index, width) else {

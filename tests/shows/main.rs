@@ -162,6 +162,8 @@ fn every_code_is_drawn_by_some_wrong_show() {
     let missing: Vec<&str> = Code::ALL
         .iter()
         .map(|code| code.text())
+        // What an audit finds is drawn by logs and tables, not by shows: see tests/logs and tests/audit.
+        .filter(|code| !code.starts_with("audit/") && !code.starts_with("drift/"))
         .filter(|code| !drawn.contains(*code))
         .collect();
     assert!(missing.is_empty(), "no wrong show draws {missing:?}");
