@@ -53,7 +53,7 @@ pub enum Pace {
 /// The pose wanted at the first row of the hold.
 #[derive(Clone, Debug, PartialEq, Eq, Hash)]
 pub enum Land {
-    /// Nothing written: the contract's default pose where both rotors have an index, else free.
+    /// Nothing written: the default pose where both rotors have an index, else free.
     Usual,
     /// A written angle.
     Angle(Turns),

@@ -11,6 +11,7 @@
 mod commands;
 mod examples;
 mod findings;
+mod house;
 mod samples;
 
 use std::path::{Path, PathBuf};

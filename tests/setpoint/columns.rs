@@ -101,7 +101,7 @@ fn rows_do_not_depend_on_where_a_range_starts() {
     }
 }
 
-/// The beam of each tick by the contract's own words: level at tick + latency, in a loop within the loop.
+/// The beam of each tick in the words of docs/table.md: level at tick + latency, in a loop within the loop.
 fn beam_by_definition(plan: &Plan, latency: u64) -> Vec<u8> {
     let levels: Vec<u8> = plan
         .legs
