@@ -25,10 +25,10 @@ struct Breach {
 }
 
 /// Where a transition stands: kind, cue before, cue it leads to or leaves.
-type Spot = (LegKind, Option<u32>, u32);
+pub(super) type Spot = (LegKind, Option<u32>, u32);
 
 /// What a passage needs, owned.
-struct Owned<'a> {
+pub(super) struct Owned<'a> {
     from: Pair<Speed>,
     to: Pair<Speed>,
     aim: Aim,
@@ -98,7 +98,7 @@ impl<'a> Judge<'a> {
 }
 
 impl Owned<'_> {
-    fn passage<'b>(&'b self, plan: &'b Plan) -> Passage<'b> {
+    pub(super) fn passage<'b>(&'b self, plan: &'b Plan) -> Passage<'b> {
         Passage {
             rig: &plan.rig,
             law: &self.transition.law,
@@ -109,13 +109,15 @@ impl Owned<'_> {
     }
 }
 
-fn before(plan: &Plan, index: usize) -> Option<u32> {
+/// The written cue before a transition; none for a run-up or a run-down.
+pub(super) fn before(plan: &Plan, index: usize) -> Option<u32> {
     let leg = plan.legs.get(index)?;
     let before = plan.legs.get(index.checked_sub(1)?)?;
     (leg.kind != LegKind::RunDown).then_some(before.written)
 }
 
-fn owned(plan: &Plan, (kind, before, written): Spot, closes: bool) -> Option<Owned<'_>> {
+/// The passage of a transition, owned; `None` where a cue of it is broken.
+pub(super) fn owned(plan: &Plan, (kind, before, written): Spot, closes: bool) -> Option<Owned<'_>> {
     let speeds = plan.speeds.get(written as usize)?.as_ref()?;
     let (from, to) = ends(&plan.speeds, kind, before, written)?;
     Some(Owned {

@@ -1,21 +1,29 @@
 //! Time spent below the stall speed in a morph between cues, or the loop's.
 
 use super::gather::Gather;
+use super::limits::{Spot, before, owned};
 use super::transition_place;
 use super::words::speed;
-use crate::exact::{Speed, decimal, from_f64};
+use crate::exact::{Speed, Ticks, decimal, from_f64};
 use crate::finding::{Code, Finding, Severity};
 use crate::motion::profile::Profile;
-use crate::plan::{LegKind, Plan};
+use crate::plan::{Leg, LegKind, Plan};
 use crate::rig::RotorId;
+use std::collections::BTreeMap;
 
 pub(super) struct Judge<'a> {
     plan: &'a Plan,
+    /// Whether a transition between two speeds above the stall speed can dip below it for some landing: found once for
+    /// all its plays, since most never can.
+    dips: BTreeMap<(Spot, bool, Ticks), bool>,
 }
 
 impl<'a> Judge<'a> {
     pub(super) fn new(plan: &'a Plan) -> Self {
-        Self { plan }
+        Self {
+            plan,
+            dips: BTreeMap::new(),
+        }
     }
 
     pub(super) fn check(&mut self, index: usize, gather: &mut Gather) {
@@ -26,9 +34,10 @@ impl<'a> Judge<'a> {
         if !matches!(leg.kind, LegKind::Morph | LegKind::LoopMorph) {
             return;
         }
+        let may_dip = self.may_dip(index, leg);
         let crossing: Vec<RotorId> = RotorId::BOTH
             .into_iter()
-            .filter(|id| crosses(plan, index, *id))
+            .filter(|id| crosses(plan, index, *id, may_dip))
             .collect();
         if crossing.is_empty() {
             return;
@@ -56,6 +65,38 @@ impl<'a> Judge<'a> {
     }
 }
 
+impl Judge<'_> {
+    fn may_dip(&mut self, index: usize, leg: &Leg) -> bool {
+        let plan = self.plan;
+        let spot = (leg.kind, before(plan, index), leg.written);
+        let closes = plan.closes(index);
+        *self
+            .dips
+            .entry((spot, closes, leg.ticks))
+            .or_insert_with(|| dips(plan, spot, closes, leg.ticks))
+    }
+}
+
+/// Whether either motor dips below its stall speed for one of the worst landings.
+fn dips(plan: &Plan, spot: Spot, closes: bool, ticks: Ticks) -> bool {
+    let Some(owned) = owned(plan, spot, closes) else {
+        return true;
+    };
+    let passage = owned.passage(plan);
+    let shapes = passage.shapes(ticks);
+    let time = ticks.time(plan.tick());
+    // Without a worst landing (a one-way rotor turns back) each play is looked at by itself.
+    passage.worst(ticks).is_none_or(|all| {
+        all.iter().any(|pair| {
+            RotorId::BOTH.into_iter().any(|id| {
+                let stall = plan.rig.rotor(id).stall_speed.value.to_f64();
+                let ends = (passage.from.of(id), passage.to.of(id));
+                Profile::new(shapes.of(id), ends, pair.of(id), &time).time_below(stall) > 0.0
+            })
+        })
+    })
+}
+
 fn time_below(plan: &Plan, index: usize, id: RotorId) -> f64 {
     let stall = plan.rig.rotor(id).stall_speed.value.to_f64();
     plan.move_of(index, id)
@@ -64,7 +105,7 @@ fn time_below(plan: &Plan, index: usize, id: RotorId) -> f64 {
 
 /// Whether a rotor is at 0 < |v| < stall speed at some time of a morph; one that stands before and after is only
 /// nudged by a landing and does not count.
-fn crosses(plan: &Plan, index: usize, id: RotorId) -> bool {
+fn crosses(plan: &Plan, index: usize, id: RotorId, may_dip: bool) -> bool {
     let stall = &plan.rig.rotor(id).stall_speed.value;
     if stall.is_zero() {
         return false;
@@ -83,5 +124,5 @@ fn crosses(plan: &Plan, index: usize, id: RotorId) -> bool {
         return true;
     }
     // Both ends run evenly, the same way: only an overshoot or a strong correction dips below.
-    time_below(plan, index, id) > 0.0
+    may_dip && time_below(plan, index, id) > 0.0
 }
