@@ -62,3 +62,45 @@ fn the_audit_evaluates_by_itself() {
         }
     }
 }
+
+/// Markdown files of the project, relative to its root.
+fn pages() -> Vec<PathBuf> {
+    let mut found: Vec<PathBuf> = ["README.md", "DEVELOPERS.md", "CHANGELOG.md"]
+        .iter()
+        .map(PathBuf::from)
+        .collect();
+    for entry in std::fs::read_dir(root().join("docs")).unwrap() {
+        let name = entry.unwrap().file_name();
+        if name.to_string_lossy().ends_with(".md") {
+            found.push(Path::new("docs").join(name));
+        }
+    }
+    found
+}
+
+/// A link within the project leads to a file that is there.
+#[test]
+fn every_link_leads_somewhere() {
+    let mut checked = 0;
+    for page in pages() {
+        let text = crate::read(&page);
+        for link in text
+            .split("](")
+            .skip(1)
+            .filter_map(|rest| rest.split(')').next())
+        {
+            let file = link.split('#').next().unwrap_or_default();
+            if file.is_empty() || file.contains("://") {
+                continue;
+            }
+            let target = root().join(&page).parent().unwrap().join(file);
+            assert!(
+                target.exists(),
+                "{} links to {link}, which is not there",
+                page.display()
+            );
+            checked += 1;
+        }
+    }
+    assert!(checked > 10, "only {checked} links were found");
+}
