@@ -20,7 +20,7 @@
 //!          │
 //!          │  setpoint    (integer fixed point; blocks in parallel, in order)
 //!          ▼
-//!        rows             setpoint ─────▶ CSV, JSON              what a controller plays
+//!        rows, knots      setpoint ─────▶ CSV, JSON, pack, C     what a controller plays
 //!          │
 //!          └──────────▶ audit      ─────▶ findings               the finished table read again, by an evaluator of its own
 //! ```

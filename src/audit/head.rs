@@ -23,10 +23,11 @@ enum Next {
 }
 
 /// The keys of the head in their order; `cues` and `findings` go on for a line each entry.
-const KEYS: [&str; 16] = [
+const KEYS: [&str; 17] = [
     "format",
     "program",
     "table",
+    "knots",
     "show",
     "rig",
     "tick_s",
@@ -48,6 +49,8 @@ pub(super) struct Heads<'p> {
     next: Next,
     /// The leg that the next entry of the cue list stands for.
     leg: usize,
+    /// The tolerance of knots; `None` for rows.
+    knots: Option<u32>,
 }
 
 impl<'p> Heads<'p> {
@@ -57,6 +60,15 @@ impl<'p> Heads<'p> {
             id: id.to_owned(),
             next: Next::Opening,
             leg: 0,
+            knots: None,
+        }
+    }
+
+    /// The head of knots: what they are in place of the columns, then the first list.
+    pub(super) fn of_knots(plan: &'p Plan, id: &str, tolerance: u32) -> Self {
+        Self {
+            knots: Some(tolerance),
+            ..Self::new(plan, id)
         }
     }
 
@@ -74,7 +86,7 @@ impl<'p> Heads<'p> {
                     let wanted = "an entry for every cue";
                     report.add(problem("cues", wanted.to_owned(), shown(text)));
                 }
-                self.next = after("cues");
+                self.next = self.after("cues");
             }
             Next::Findings if text != b"]," => {
                 let entry = text.strip_suffix(b",").unwrap_or(text);
@@ -82,7 +94,7 @@ impl<'p> Heads<'p> {
                     report.add(problem("findings", "a JSON object".to_owned(), shown(text)));
                 }
             }
-            Next::Findings => self.next = after("findings"),
+            Next::Findings => self.next = self.after("findings"),
             Next::Key(index) => return self.key(index, text, report),
             Next::Closed => {}
         }
@@ -101,16 +113,18 @@ impl<'p> Heads<'p> {
     }
 
     fn key(&mut self, index: usize, text: &[u8], report: &mut Report) -> bool {
-        let Some(name) = KEYS.get(index) else {
-            expect("rows", "\"rows\":[", text, report);
+        let Some(name) = self.keys().nth(index) else {
+            let first = if self.knots.is_some() { "a" } else { "rows" };
+            expect(first, &format!("\"{first}\":["), text, report);
             return true;
         };
-        self.next = match *name {
+
+        self.next = match name {
             "cues" => Next::Cues,
             "findings" => Next::Findings,
             _ => Next::Key(index + 1),
         };
-        if matches!(*name, "cues" | "findings") {
+        if matches!(name, "cues" | "findings") {
             expect(name, &format!("\"{name}\":["), text, report);
             return false;
         }
@@ -120,6 +134,19 @@ impl<'p> Heads<'p> {
             report.add(problem(name, wanted.to_string(), shown(text)));
         }
         false
+    }
+
+    /// The keys in their order: knots say so after the table's ID, and have no columns.
+    fn keys(&self) -> impl Iterator<Item = &'static str> {
+        let knots = self.knots.is_some();
+        KEYS.into_iter()
+            .filter(move |key| !matches!((*key, knots), ("knots", false) | ("columns", true)))
+    }
+
+    /// The key that follows the list `name`.
+    fn after(&self, name: &str) -> Next {
+        let place = self.keys().position(|key| key == name);
+        Next::Key(place.map_or(0, |place| place + 1))
     }
 
     /// What a key must say.
@@ -154,6 +181,7 @@ impl<'p> Heads<'p> {
                 "b_turns": self.mirror(plan.legs.len(), RotorId::B),
             }),
             "columns" => json!(COLUMNS),
+            "knots" => json!({"tolerance": self.knots, "fraction_bits": 32}),
             _ => Value::Null,
         }
     }
@@ -247,12 +275,6 @@ impl<'p> Heads<'p> {
         };
         phase.to_string()
     }
-}
-
-/// The key that follows the list `name`.
-fn after(name: &str) -> Next {
-    let place = KEYS.iter().position(|key| *key == name);
-    Next::Key(place.map_or(0, |place| place + 1))
 }
 
 fn problem(column: &str, wanted: String, found: String) -> Problem {

@@ -8,17 +8,23 @@
 //! [`Auditor`] takes bytes as they come, so it can look at a stream while it is written; [`audit`] reads a whole table.
 //! Memory is bounded whatever the length.
 
+mod any;
 mod bezier;
 mod double;
 mod fields;
 mod head;
+mod header;
+mod knots;
 mod laws;
 pub mod log;
+mod pack;
+mod points;
 mod rows;
 mod sine;
 mod stream;
 mod wanted;
 
+pub use any::{TableAuditor, audit_table};
 pub use stream::{Auditor, audit};
 
 use std::fmt;

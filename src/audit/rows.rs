@@ -266,16 +266,16 @@ fn stretch_start(plan: &Plan) -> u64 {
 }
 
 /// What a row must say.
-struct RowWanted {
-    cue: u32,
-    beam: u8,
-    now: Pair<RotorWanted>,
+pub(super) struct RowWanted {
+    pub(super) cue: u32,
+    pub(super) beam: u8,
+    pub(super) now: Pair<RotorWanted>,
     /// Unwrapped counts of the row after.
-    next: Pair<Wanted>,
+    pub(super) next: Pair<Wanted>,
 }
 
 /// Walks along the plan, leg by leg.
-struct Expected<'p> {
+pub(super) struct Expected<'p> {
     plan: &'p Plan,
     latency: u64,
     leg: usize,
@@ -285,7 +285,7 @@ struct Expected<'p> {
 }
 
 impl<'p> Expected<'p> {
-    fn new(plan: &'p Plan, latency: u64, first: u64) -> Self {
+    pub(super) fn new(plan: &'p Plan, latency: u64, first: u64) -> Self {
         let begun = plan.legs.partition_point(|leg| leg.start.0 <= first);
         Self {
             plan,
@@ -296,7 +296,12 @@ impl<'p> Expected<'p> {
         }
     }
 
-    fn next(&mut self, tick: u64, report: &mut Report) -> RowWanted {
+    /// The next row asked for need not be the one after the last.
+    pub(super) fn jump(&mut self) {
+        self.now = None;
+    }
+
+    pub(super) fn next(&mut self, tick: u64, report: &mut Report) -> RowWanted {
         while let Some(leg) = self.plan.legs.get(self.leg) {
             if tick < leg.start.0 + leg.ticks.0 {
                 return self.inside(tick, leg, report);

@@ -12,6 +12,7 @@ mod peaks;
 mod pose;
 mod stall;
 mod still;
+pub mod storage;
 mod time;
 mod words;
 

@@ -68,3 +68,15 @@ pub(super) fn transition(kind: LegKind) -> &'static str {
         LegKind::Hold => "hold",
     }
 }
+
+/// A size in bytes, in the unit in which a rig states it where it is a whole number of them.
+pub(super) fn bytes(size: u64) -> String {
+    const KIB: u64 = 1024;
+    const MIB: u64 = KIB * KIB;
+    match size {
+        0 => "0 B".to_owned(),
+        whole if whole.is_multiple_of(MIB) => format!("{} MiB", whole / MIB),
+        whole if whole.is_multiple_of(KIB) => format!("{} KiB", whole / KIB),
+        size => format!("{size} B"),
+    }
+}

@@ -6,10 +6,12 @@ use super::progress::Progress;
 use super::report::{Target, report};
 use super::{CLEAN, Common, ERRORS, Failure, Streams};
 use crate::audit::log::{self, LogReport};
-use crate::audit::{Report, audit};
+use crate::audit::{Report, audit_table};
 use crate::finding::{FileId, Finding, Place, Sources};
 use crate::plan::Plan;
-use crate::setpoint::{Form, table_id};
+use crate::setpoint::c_header;
+use crate::setpoint::pack::{Content, PackForm, PackHead};
+use crate::setpoint::{Form, Output, table_id};
 use clap::{Args, ValueEnum};
 use std::fs::{self, File, OpenOptions};
 use std::io::{self, BufRead, BufReader, Read, Write};
@@ -49,9 +51,11 @@ enum AuditForm {
 }
 
 /// What a file is, as its first bytes tell.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+#[derive(Clone, Debug, PartialEq, Eq)]
 enum Kind {
-    Table(Form),
+    Table(Output),
+    /// It starts like a table for controllers, and does not go on like one.
+    Broken(String),
     Log,
 }
 
@@ -83,9 +87,12 @@ impl Audit {
         let name = self.file.display().to_string();
         let log_file = loader.sources.add(name, "");
         let mut file = self.open(streams)?;
-        let start = file.fill_buf().map_err(|error| self.cannot(&error))?;
-        match kind(start) {
-            Kind::Table(form) => self.table(&plan, form, &mut file, common, streams),
+        let start = fill(&mut file, HEAD as usize).map_err(|error| self.cannot(&error))?;
+        let mut file =
+            BufReader::with_capacity(STRETCH, io::Cursor::new(start.clone()).chain(file));
+        match kind(&start) {
+            Kind::Table(output) => self.table(&plan, &output, &mut file, common, streams),
+            Kind::Broken(what) => Err(Failure::Cannot(format!("{}: {what}", self.file.display()))),
             Kind::Log => self.log(&plan, &mut file, log_file, &loader.sources, common, streams),
         }
     }
@@ -116,13 +123,14 @@ impl Audit {
             .map_err(|error| self.cannot(&error))?;
         let name = self.file.display();
         match (kind(&start), id_within(&start)) {
-            (Kind::Table(Form::Json), Some(id)) => {
+            (Kind::Table(Output::Rows(Form::Csv)), _) => Err(Failure::Cannot(format!(
+                "{name} is a table as CSV, which carries no ID: say `--show SHOW` to compare it with its show"
+            ))),
+            (Kind::Table(_), Some(id)) => {
                 writeln!(streams.stdout, "{id}")?;
                 Ok(CLEAN)
             }
-            (Kind::Table(Form::Csv), _) => Err(Failure::Cannot(format!(
-                "{name} is a table as CSV, which carries no ID: say `--show SHOW` to compare it with its show"
-            ))),
+            (Kind::Broken(what), _) => Err(Failure::Cannot(format!("{name}: {what}"))),
             (Kind::Table(_), None) => Err(Failure::Cannot(format!(
                 "{name}: no table ID in its first {HEAD} bytes"
             ))),
@@ -135,7 +143,7 @@ impl Audit {
     fn table(
         &self,
         plan: &Plan,
-        form: Form,
+        output: &Output,
         file: &mut dyn Read,
         common: &Common,
         streams: &mut Streams,
@@ -147,7 +155,7 @@ impl Audit {
         let id = table_id(plan);
         let progress = Progress::new(plan.rows(), common, streams);
         progress.phase("checking");
-        let found = audit(plan, form, &id, file, &mut |rows| progress.rows(rows));
+        let found = audit_table(plan, output, &id, file, &mut |rows| progress.rows(rows));
         progress.done();
         let found = found.map_err(|error| self.cannot(&error))?;
         let name = self.file.display().to_string();
@@ -204,27 +212,96 @@ impl Audit {
     }
 }
 
+/// The first bytes of a file, up to `most` of them.
+fn fill(file: &mut dyn Read, most: usize) -> io::Result<Vec<u8>> {
+    let mut start = Vec::new();
+    file.take(most as u64).read_to_end(&mut start)?;
+    Ok(start)
+}
+
 /// A table is known by its first line or sign; all else is taken for a log, whose reader says what is wrong with it.
 fn kind(start: &[u8]) -> Kind {
+    if start.starts_with(b"PHWT") {
+        return match pack_content(start) {
+            Ok(content) => Kind::Table(Output::Pack(content)),
+            Err(what) => Kind::Broken(what),
+        };
+    }
     let text = start.strip_prefix(b"\xef\xbb\xbf").unwrap_or(start);
     let text = text.trim_ascii_start();
-    if text.starts_with(b"{") {
-        Kind::Table(Form::Json)
+    if text.starts_with(b"/*") {
+        header(text)
+    } else if text.starts_with(b"{") {
+        match tolerance_within(text) {
+            Some(tolerance) => Kind::Table(Output::JsonKnots(tolerance)),
+            None => Kind::Table(Output::Rows(Form::Json)),
+        }
     } else if text.starts_with(b"tick,") {
-        Kind::Table(Form::Csv)
+        Kind::Table(Output::Rows(Form::Csv))
     } else {
         Kind::Log
     }
 }
 
-/// The value of the key `table`: eight hexadecimal digits.
-fn id_within(start: &[u8]) -> Option<String> {
+/// What a pack that starts like this holds.
+fn pack_content(start: &[u8]) -> Result<Content, String> {
+    let head = PackHead::read(start).map_err(|fault| fault.to_string())?;
+    Ok(match head.form {
+        PackForm::Rows => Content::Rows,
+        PackForm::Knots => Content::Knots(u32::from(head.tolerance)),
+    })
+}
+
+/// A C header: the table's identifier, and what it holds, from the first lines of its table.
+fn header(text: &[u8]) -> Kind {
+    let text = String::from_utf8_lossy(text);
+    let table = text
+        .split_once("static const uint8_t ")
+        .and_then(|(_, rest)| {
+            let (name, rest) = rest.split_once("_table[] PHW_STORE = {")?;
+            let bytes = rest.split_once("};").map_or(rest, |(bytes, _)| bytes);
+            Some((name.to_owned(), c_header::elements(bytes)))
+        });
+    match table {
+        None => Kind::Broken("it starts like a C header, but has no table".to_owned()),
+        Some((name, start)) => match pack_content(&start) {
+            Ok(content) => Kind::Table(Output::Header(content, name)),
+            Err(what) => Kind::Broken(what),
+        },
+    }
+}
+
+/// The tolerance of knots, where a JSON table has them in place of rows.
+fn tolerance_within(start: &[u8]) -> Option<u32> {
     let text = String::from_utf8_lossy(start);
-    let (_, after) = text.split_once("\"table\"")?;
-    let value = after.trim_start().strip_prefix(':')?.trim_start();
-    let (id, _) = value.strip_prefix('"')?.split_once('"')?;
-    let right = id.len() == 8 && id.bytes().all(|sign| sign.is_ascii_hexdigit());
-    right.then(|| id.to_owned())
+    let (_, after) = text.split_once("\n\"knots\":{\"tolerance\":")?;
+    let (number, _) = after.split_once(',')?;
+    number.parse().ok()
+}
+
+/// The ID in the start of a table: eight hexadecimal digits.
+fn id_within(start: &[u8]) -> Option<String> {
+    match kind(start) {
+        Kind::Table(Output::Pack(_)) => {
+            let head = PackHead::read(start).ok()?;
+            Some(format!("{:08x}", head.id))
+        }
+        Kind::Table(Output::Header(..)) => {
+            let text = String::from_utf8_lossy(start);
+            let (_, bytes) = text.split_once("_table[] PHW_STORE = {")?;
+            let head = PackHead::read(&c_header::elements(bytes)).ok()?;
+            Some(format!("{:08x}", head.id))
+        }
+        Kind::Table(Output::Rows(Form::Json) | Output::JsonKnots(_)) => {
+            let text = String::from_utf8_lossy(start);
+            let (_, after) = text.split_once("\"table\"")?;
+            let value = after.trim_start().strip_prefix(':')?.trim_start();
+            let (id, _) = value.strip_prefix('"')?.split_once('"')?;
+            let right = id.len() == 8 && id.bytes().all(|sign| sign.is_ascii_hexdigit());
+            right.then(|| id.to_owned())
+        }
+        _ => None,
+    }
 }
 
 fn table_text(name: &str, id: &str, found: &Report) -> String {

@@ -5,11 +5,16 @@ use super::load::{Loader, is_standard_input};
 use super::progress::Progress;
 use super::report::{Target, Verdict, report, wants_words};
 use super::{Common, Failure, Streams};
+use crate::check::storage;
 use crate::finding::render::json_values;
 use crate::finding::{Code, Finding, Place, ordered};
 use crate::plan::Plan;
-use crate::setpoint::{Form, Head, table_id};
+use crate::rig::TableKind;
+use crate::setpoint::c_header::identifier;
+use crate::setpoint::pack::Content;
+use crate::setpoint::{Form, Head, Output, table_id};
 use clap::{Args, ValueEnum};
+use std::ffi::OsString;
 use std::fs;
 use std::path::{Path, PathBuf};
 
@@ -28,6 +33,21 @@ pub(super) struct Compile {
     /// How the table is written; left out: by the ending of TABLE, else csv
     #[arg(long, value_name = "FORM")]
     form: Option<TableForm>,
+    /// Write knots, short tables for small controllers, as pack, c or json; `--knots within N counts`: with each tick within
+    /// N counts of the rows (1 if left out)
+    #[arg(
+        long,
+        value_name = "within N counts",
+        num_args = 0..=1,
+        require_equals = true,
+        default_missing_value = "within 1 counts",
+        value_parser = knots_within,
+        overrides_with = "rows"
+    )]
+    knots: Option<u32>,
+    /// Write rows, whatever the rig says of its table
+    #[arg(long, overrides_with = "knots")]
+    rows: bool,
     /// Start at this cue, in the order of play
     #[arg(long, value_name = "K")]
     from: Option<u32>,
@@ -39,31 +59,89 @@ enum TableForm {
     Csv,
     /// The same rows after a head that tells what they are
     Json,
+    /// A C header with the table and its player
+    C,
+    /// Binary, for controllers
+    Pack,
 }
 
-impl From<TableForm> for Form {
-    fn from(form: TableForm) -> Self {
-        match form {
-            TableForm::Csv => Form::Csv,
-            TableForm::Json => Form::Json,
+impl TableForm {
+    /// The form that goes by this ending.
+    fn of_ending(ending: &str) -> Option<Self> {
+        match ending {
+            "csv" => Some(Self::Csv),
+            "json" => Some(Self::Json),
+            "h" => Some(Self::C),
+            "pack" => Some(Self::Pack),
+            _ => None,
         }
     }
+
+    fn ending(self) -> &'static str {
+        match self {
+            Self::Csv => "csv",
+            Self::Json => "json",
+            Self::C => "h",
+            Self::Pack => "pack",
+        }
+    }
+}
+
+/// The largest tolerance of knots, in counts.
+const MOST_TOLERANCE: u32 = 65_535;
+
+/// Reads what stands after `--knots`: `within N counts`.
+fn knots_within(text: &str) -> Result<u32, String> {
+    let words: Vec<&str> = text.split_whitespace().collect();
+    let number = match words.as_slice() {
+        ["within", number, "counts" | "count"] => number.parse().ok(),
+        _ => None,
+    };
+    number
+        .filter(|number| (1..=MOST_TOLERANCE).contains(number))
+        .ok_or_else(|| format!("write `--knots within N counts`, N from 1 to {MOST_TOLERANCE}"))
+}
+
+/// Joins `--knots within N counts` to one argument, so that what follows a bare `--knots` is not taken for its value.
+pub(super) fn joined_knots(arguments: impl IntoIterator<Item = OsString>) -> Vec<OsString> {
+    let mut joined: Vec<OsString> = Vec::new();
+    let mut arguments = arguments.into_iter().peekable();
+    while let Some(mut argument) = arguments.next() {
+        if argument == "--knots" && arguments.peek().is_some_and(|next| next == "within") {
+            for (index, word) in arguments.by_ref().take(3).enumerate() {
+                argument.push(if index == 0 { "=" } else { " " });
+                argument.push(word);
+            }
+        }
+        joined.push(argument);
+    }
+    joined
 }
 
 impl Compile {
     pub(super) fn run(&self, common: &Common, streams: &mut Streams) -> Result<u8, Failure> {
         let form = self.form()?;
-        let output = self.output(form);
+        let target = self.target(form);
         let mut loader = Loader::new(common.rig.clone(), std::slice::from_ref(&self.show))?;
         let (plan, mut findings) = loader.plan(&self.show, self.from, &mut streams.stdin)?;
-        findings.extend(plan.as_ref().and_then(too_many_rows));
+        let output = match &plan {
+            Some(plan) => Some(self.output(form, &target, plan)?),
+            None => None,
+        };
+        if let (Some(plan), Some(output)) = (&plan, &output) {
+            let too_long = too_many_rows(plan, output);
+            if too_long.is_none() {
+                findings.extend(storage::check(plan, output.content()));
+            }
+            findings.extend(too_long);
+        }
         let findings = ordered(findings);
         let sources = &loader.sources;
         let verdict = report(findings.clone(), sources, common, Target::Stderr, streams)?;
-        let Some(plan) = plan.filter(|_| !verdict.stops()) else {
+        let Some((plan, output)) = plan.zip(output).filter(|_| !verdict.stops()) else {
             return Ok(self.nothing_written(verdict, common, streams));
         };
-        refuse_to_overwrite(&output, sources.names())?;
+        refuse_to_overwrite(&target, sources.names())?;
         let (id, findings) = (table_id(&plan), json_values(&findings, sources));
         let head = Head {
             id: &id,
@@ -71,57 +149,83 @@ impl Compile {
         };
         let table = Table {
             plan: &plan,
-            form,
+            output,
             id: &id,
             head,
         };
         let progress = Progress::new(plan.rows(), common, streams);
-        let written = if is_standard_input(&output) {
+        let written = if is_standard_input(&target) {
             table.stream(&mut streams.stdout, &progress)?
         } else {
-            table.file(&output, &progress)
+            table.file(&target, &progress)
         };
         progress.done();
         written?;
-        say_done(&plan, &id, &output, common, streams)?;
+        say_done(&table, &target, common, streams)?;
         Ok(verdict.code)
     }
 
     /// `--form`, else the ending of the table's name, else csv.
-    fn form(&self) -> Result<Form, Failure> {
+    fn form(&self) -> Result<TableForm, Failure> {
         if let Some(form) = self.form {
-            return Ok(form.into());
+            return Ok(form);
         }
         let named = self.output.as_deref();
         let Some(output) = named.filter(|path| !is_standard_input(path)) else {
-            return Ok(Form::Csv);
+            return Ok(TableForm::Csv);
         };
         let ending = output.extension().map(|ending| ending.to_string_lossy());
-        match ending.as_deref() {
-            Some("csv") => Ok(Form::Csv),
-            Some("json") => Ok(Form::Json),
-            _ => Err(Failure::Usage(format!(
-                "the name {} does not end in .csv or .json: say `--form csv` or `--form json`",
+        ending.as_deref().and_then(TableForm::of_ending).ok_or_else(|| {
+            Failure::Usage(format!(
+                "the name {} does not end in .csv, .json, .h or .pack: say `--form csv`, `json`, `c` or `pack`",
                 output.display()
-            ))),
+            ))
+        })
+    }
+
+    /// The form with what it holds: knots where `--knots` says so, or the rig for the forms of controllers.
+    fn output(&self, form: TableForm, target: &Path, plan: &Plan) -> Result<Output, Failure> {
+        let by_rig = plan.rig.table == TableKind::Knots && !self.rows;
+        let content = match self.knots {
+            Some(tolerance) => Content::Knots(tolerance),
+            None if by_rig => Content::Knots(1),
+            None => Content::Rows,
+        };
+        match (form, self.knots) {
+            (TableForm::Csv, None) => Ok(Output::Rows(Form::Csv)),
+            (TableForm::Csv, Some(_)) => Err(Failure::Usage(
+                "csv has a line a row: write knots as `--form pack`, `c` or `json`".to_owned(),
+            )),
+            (TableForm::Json, None) => Ok(Output::Rows(Form::Json)),
+            (TableForm::Json, Some(tolerance)) => Ok(Output::JsonKnots(tolerance)),
+            (TableForm::Pack, _) => Ok(Output::Pack(content)),
+            (TableForm::C, _) => Ok(Output::Header(content, self.name(target))),
         }
+    }
+
+    /// The identifier of a C header: from the file's name, for standard output from the show's.
+    fn name(&self, target: &Path) -> String {
+        let named = [target, &self.show]
+            .into_iter()
+            .find(|path| !is_standard_input(path));
+        let stem = named.and_then(Path::file_stem);
+        stem.map_or_else(
+            || "show".to_owned(),
+            |stem| identifier(&stem.to_string_lossy()),
+        )
     }
 
     /// Where the table goes: `-o`, else standard output for a show from standard input, else the show's name with the
     /// form's ending, in the current folder.
-    fn output(&self, form: Form) -> PathBuf {
+    fn target(&self, form: TableForm) -> PathBuf {
         if let Some(output) = &self.output {
             return output.clone();
         }
-        let ending = match form {
-            Form::Csv => "csv",
-            Form::Json => "json",
-        };
         match self.show.file_stem() {
             Some(name) if !is_standard_input(&self.show) => {
                 let mut file = name.to_owned();
                 file.push(".");
-                file.push(ending);
+                file.push(form.ending());
                 PathBuf::from(file)
             }
             _ => PathBuf::from("-"),
@@ -144,19 +248,23 @@ impl Compile {
 
 /// Names the table: on standard output, or on standard error where the table itself went, or may have gone, there.
 fn say_done(
-    plan: &Plan,
-    id: &str,
-    output: &Path,
+    table: &Table<'_>,
+    target: &Path,
     common: &Common,
     streams: &mut Streams,
 ) -> Result<(), Failure> {
-    let rows = plan.rows();
     if common.quiet {
         return Ok(());
     }
-    let words = format!("{}: table {id}, {rows} rows", output.display());
+    let (id, rows) = (table.id, table.plan.rows());
+    let what = if table.output.has_rows() {
+        "rows"
+    } else {
+        "ticks in knots"
+    };
+    let words = format!("{}: table {id}, {rows} {what}", target.display());
     // A device may be standard output under another name.
-    let streamed = fs::metadata(output).map_or(true, |found| !found.is_file());
+    let streamed = fs::metadata(target).map_or(true, |found| !found.is_file());
     if !streamed {
         writeln!(streams.stdout, "{words}")?;
     } else if wants_words(common) {
@@ -166,9 +274,9 @@ fn say_done(
 }
 
 /// A table with one row a tick that is longer than any controller plays; the place is the cue in which it gets too long.
-fn too_many_rows(plan: &Plan) -> Option<Finding> {
+fn too_many_rows(plan: &Plan, output: &Output) -> Option<Finding> {
     let rows = plan.rows();
-    if rows <= MOST_ROWS {
+    if rows <= MOST_ROWS || !output.has_rows() {
         return None;
     }
     let at = plan.legs.partition_point(|leg| leg.start.0 < MOST_ROWS);
@@ -180,7 +288,9 @@ fn too_many_rows(plan: &Plan) -> Option<Finding> {
     };
     let factor = rows.div_ceil(MOST_ROWS);
     let message = format!("the table would have {rows} rows, the limit is {MOST_ROWS}");
-    let help = format!("a `tick` {factor} times as long, or a shorter show, fits");
+    let help = format!(
+        "`--knots` (as pack, c or json) has no such limit; else a `tick` {factor} times as long, or a shorter show, fits"
+    );
     Some(Finding::new(Code::TextTooMuch, place, message).help(help))
 }
 

@@ -3,10 +3,10 @@
 
 use super::Failure;
 use super::progress::Progress;
-use crate::audit::{Auditor, Report};
+use crate::audit::{Report, TableAuditor};
 use crate::finding::render::counted;
 use crate::plan::Plan;
-use crate::setpoint::{Form, Head, write_table};
+use crate::setpoint::{Head, Output};
 use std::fs::{self, File, OpenOptions};
 use std::io::{self, BufWriter, Read, Write};
 use std::path::{Path, PathBuf};
@@ -20,7 +20,7 @@ pub(super) struct Table<'t> {
     /// What it is made from.
     pub(super) plan: &'t Plan,
     /// How it is written.
-    pub(super) form: Form,
+    pub(super) output: Output,
     /// Its ID.
     pub(super) id: &'t str,
     /// What its head tells beside the plan.
@@ -108,7 +108,7 @@ impl Table<'_> {
     fn write(&self, out: &mut dyn Write, progress: &Progress) -> io::Result<()> {
         progress.phase("writing");
         let mut heard = |rows| progress.rows(rows);
-        write_table(self.plan, self.form, &self.head, out, &mut heard)
+        self.output.write(self.plan, &self.head, out, &mut heard)
     }
 
     fn read_back(&self, written: &mut File, progress: &Progress) -> io::Result<Report> {
@@ -129,8 +129,8 @@ impl Table<'_> {
         }
     }
 
-    fn auditor(&self) -> Auditor<'_> {
-        Auditor::new(self.plan, self.form, self.id)
+    fn auditor(&self) -> TableAuditor<'_> {
+        TableAuditor::new(self.plan, &self.output, self.id)
     }
 }
 
@@ -166,7 +166,7 @@ fn judged(report: &Report, name: &str) -> Result<(), Failure> {
 /// Writes to a stream and shows the auditor what went through.
 struct Tee<'t, 'p> {
     out: &'t mut dyn Write,
-    auditor: Auditor<'p>,
+    auditor: TableAuditor<'p>,
 }
 
 impl Write for Tee<'_, '_> {

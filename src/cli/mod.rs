@@ -141,7 +141,7 @@ impl From<io::Error> for Failure {
 
 /// Runs one command line, program name first, and returns the exit code.
 pub fn run(arguments: impl IntoIterator<Item = OsString>, streams: &mut Streams) -> u8 {
-    let arguments = match Arguments::try_parse_from(arguments) {
+    let arguments = match Arguments::try_parse_from(compile::joined_knots(arguments)) {
         Ok(arguments) => arguments,
         // Help and version come this way too, with exit code 0.
         Err(answer) => {

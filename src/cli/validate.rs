@@ -3,6 +3,7 @@
 use super::load::Loader;
 use super::report::{Target, report, wants_words};
 use super::{Common, Failure, Streams};
+use crate::check::storage;
 use crate::finding::render::counted;
 use clap::Args;
 use std::path::PathBuf;
@@ -20,8 +21,9 @@ impl Validate {
         let mut loader = Loader::new(common.rig.clone(), &self.shows)?;
         let mut findings = Vec::new();
         for show in &self.shows {
-            let (_plan, found) = loader.plan(show, None, &mut streams.stdin)?;
+            let (plan, found) = loader.plan(show, None, &mut streams.stdin)?;
             findings.extend(found);
+            findings.extend(plan.and_then(|plan| storage::check(&plan, None)));
         }
         let verdict = report(findings, &loader.sources, common, Target::Stdout, streams)?;
         if wants_words(common) {

@@ -87,6 +87,8 @@ codes! {
     PoseOpen, "pose/open", Note;
     /// The loop's morph is too short to close the loop.
     LoopSeam, "loop/seam", Error;
+    /// The table does not fit the controller.
+    StorageOver, "storage/over", Error;
     /// A boundary was moved to the nearest tick.
     TimeRounded, "time/rounded", Note;
     /// `hold until` a time that is past.

@@ -8,6 +8,7 @@ use super::{Entry, Kind, Sheet, named};
 use crate::check::{Peak, Peaks};
 use crate::exact::{Rational, Ticks};
 use crate::rig::{Pair, Projection};
+use crate::setpoint::Sizes;
 use serde::Serialize;
 use serde_json::value::RawValue;
 use std::io::{self, Write};
@@ -77,6 +78,32 @@ struct PeakValues {
     b_torque: Option<Number>,
 }
 
+/// What the table takes in each form; null where nobody would wait for it.
+#[derive(Serialize)]
+struct Bytes {
+    csv: u64,
+    json: u64,
+    c: u64,
+    pack: u64,
+    json_knots: u64,
+    c_knots: u64,
+    pack_knots: u64,
+}
+
+impl From<Sizes> for Bytes {
+    fn from(sizes: Sizes) -> Self {
+        Self {
+            csv: sizes.csv,
+            json: sizes.json,
+            c: sizes.c,
+            pack: sizes.pack,
+            json_knots: sizes.json_knots,
+            c_knots: sizes.c_knots,
+            pack_knots: sizes.pack_knots,
+        }
+    }
+}
+
 #[derive(Serialize)]
 struct Laser {
     class: Option<String>,
@@ -101,6 +128,7 @@ pub(super) fn write(sheet: &Sheet<'_>, out: &mut dyn Write) -> io::Result<()> {
     line(out, "run_s", &time(plan.total()))?;
     line(out, "loop_s", &sheet.round().and_then(time))?;
     line(out, "loop_start_s", &plan.loop_start().and_then(time))?;
+    line(out, "bytes", &sheet.sizes.map(Bytes::from))?;
     let before = Before {
         steps: &words::before(sheet),
         after_a_stop: words::after_stop(sheet),

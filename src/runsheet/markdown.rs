@@ -89,6 +89,9 @@ fn write_head(sheet: &Sheet<'_>, out: &mut dyn Write) -> io::Result<()> {
         )?,
         _ => writeln!(out, "- Loop length: none; it ends at rest")?,
     }
+    for size in words::sizes(sheet) {
+        writeln!(out, "- Size {size}")?;
+    }
     for gear in words::gears(sheet) {
         writeln!(out, "- {gear}")?;
     }

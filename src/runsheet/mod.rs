@@ -15,7 +15,7 @@ use crate::exact::{Rational, Seconds, Ticks, Turns, ratio, round_half_up, whole}
 use crate::finding::{Finding, Locator};
 use crate::plan::{CueSpeeds, Leg, LegKind, Plan};
 use crate::rig::{Pair, Projection, RotorId};
-use crate::setpoint::{allowance, table_id};
+use crate::setpoint::{Sizes, allowance, sizes, table_id};
 use crate::show::{Cue, Land, Transition};
 use remarks::Remarks;
 use std::io::{self, Write};
@@ -50,6 +50,8 @@ pub fn write(
         locator,
         remarks: Remarks::new(plan, findings),
         table_id: table_id(plan),
+        // CSV has a line a cue, and no place for it.
+        sizes: if form == Form::Csv { None } else { sizes(plan) },
     };
     match form {
         Form::Text => text::write(&sheet, out),
@@ -66,6 +68,8 @@ struct Sheet<'p> {
     remarks: Remarks,
     /// The ID of the table that belongs to the plan.
     table_id: String,
+    /// What the table takes in each form, where it was measured.
+    sizes: Option<Sizes>,
 }
 
 /// What an entry of a run sheet is.

@@ -65,6 +65,9 @@ fn write_head(sheet: &Sheet<'_>, out: &mut dyn Write) -> io::Result<()> {
     ] {
         paragraph(out, &format!("{label:<14}"), &value)?;
     }
+    for size in words::sizes(sheet) {
+        paragraph(out, &format!("{:<14}", "size"), &size)?;
+    }
     for gear in words::gears(sheet) {
         paragraph(out, &format!("{:<14}", "gear"), &gear)?;
     }

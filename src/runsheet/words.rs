@@ -196,3 +196,43 @@ pub(super) fn gears(sheet: &Sheet<'_>) -> Vec<String> {
         })
         .collect()
 }
+
+/// What the table takes in each form, in bytes.
+pub(super) fn sizes(sheet: &Sheet<'_>) -> Vec<String> {
+    let Some(sizes) = sheet.sizes else {
+        return Vec::new();
+    };
+    let room = sheet.plan.rig.storage.as_ref().map(|storage| {
+        let room = grouped(storage.value);
+        format!("; the controller has room for a pack of {room} B")
+    });
+    vec![
+        format!(
+            "as rows: pack {} B, C header {} B, CSV {} B, JSON {} B and its findings",
+            grouped(sizes.pack),
+            grouped(sizes.c),
+            grouped(sizes.csv),
+            grouped(sizes.json)
+        ),
+        format!(
+            "as knots: pack {} B, C header {} B, JSON {} B and its findings{}",
+            grouped(sizes.pack_knots),
+            grouped(sizes.c_knots),
+            grouped(sizes.json_knots),
+            room.unwrap_or_default()
+        ),
+    ]
+}
+
+/// A number with a blank before each group of three digits.
+fn grouped(number: u64) -> String {
+    let digits = number.to_string();
+    let mut text = String::new();
+    for (index, digit) in digits.chars().enumerate() {
+        if index > 0 && (digits.len() - index).is_multiple_of(3) {
+            text.push(' ');
+        }
+        text.push(digit);
+    }
+    text
+}

@@ -4,6 +4,7 @@
 //! Exact quantities are strings (a decimal where there is one, else `n/d`); counts and ticks are numbers.
 
 use super::beam::latency_ticks;
+use super::knots::{FRACTION_BITS, Tolerance};
 use super::{COLUMNS, TURN_PLACES};
 use crate::exact::{Rational, Turns, exact_decimal, ratio, whole};
 use crate::figure::Ratio;
@@ -28,11 +29,40 @@ pub struct Head<'f> {
 impl Head<'_> {
     /// Writes everything up to and including the line that opens `rows`.
     pub(super) fn write(&self, plan: &Plan, out: &mut dyn Write) -> io::Result<()> {
+        self.write_common(plan, None, out)?;
+        line(out, "columns", &COLUMNS)?;
+        writeln!(out, "\"rows\":[")
+    }
+
+    /// Writes everything up to the lists of pieces.
+    pub(super) fn write_knots(
+        &self,
+        plan: &Plan,
+        tolerance: Tolerance,
+        out: &mut dyn Write,
+    ) -> io::Result<()> {
+        let knots = KnotsHead {
+            tolerance,
+            fraction_bits: FRACTION_BITS,
+        };
+        self.write_common(plan, Some(knots), out)
+    }
+
+    fn write_common(
+        &self,
+        plan: &Plan,
+        knots: Option<KnotsHead>,
+        out: &mut dyn Write,
+    ) -> io::Result<()> {
         let (show, rig) = (&plan.show, &plan.rig);
         writeln!(out, "{{")?;
         line(out, "format", &JSON_FORMAT)?;
         line(out, "program", &program())?;
         line(out, "table", &self.id)?;
+        // Near the start, so that a reader knows early what it has before it.
+        if let Some(knots) = knots {
+            line(out, "knots", &knots)?;
+        }
         line(
             out,
             "show",
@@ -59,9 +89,7 @@ impl Head<'_> {
         }
         line(out, "before", &before(plan))?;
         self.write_cues(plan, out)?;
-        list(out, "findings", self.findings.iter())?;
-        line(out, "columns", &COLUMNS)?;
-        writeln!(out, "\"rows\":[")
+        list(out, "findings", self.findings.iter())
     }
 
     fn write_cues(self, plan: &Plan, out: &mut dyn Write) -> io::Result<()> {
@@ -122,6 +150,12 @@ fn list<T: Serialize>(
 struct Origin<'p> {
     title: Option<&'p str>,
     sha256: &'p str,
+}
+
+#[derive(Serialize)]
+struct KnotsHead {
+    tolerance: Tolerance,
+    fraction_bits: u32,
 }
 
 #[derive(Serialize)]

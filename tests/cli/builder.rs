@@ -125,6 +125,10 @@ impl Ran {
         }
         self
     }
+    /// The bytes of a file that must be there.
+    pub(crate) fn bytes(&self, name: &str) -> Vec<u8> {
+        fs::read(self.folder.path().join(name)).unwrap()
+    }
     /// The content of a file in the run's folder.
     pub(crate) fn file(&self, name: &str) -> Option<String> {
         fs::read_to_string(self.folder.path().join(name)).ok()

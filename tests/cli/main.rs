@@ -9,11 +9,14 @@
 mod audit;
 mod builder;
 mod compile;
+mod controllers;
 mod explain;
 mod inputs;
 mod pages;
 mod preview;
 mod runsheet;
+#[path = "../common/steady.rs"]
+mod steady;
 mod streams;
 mod usage;
 mod validate;

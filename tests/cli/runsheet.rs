@@ -1,4 +1,5 @@
 use crate::builder::{RIG, Run, SHOW};
+use crate::steady::steady;
 use insta::assert_snapshot;
 
 #[test]
@@ -53,22 +54,38 @@ fn example(show: &str, rig: &str, form: &str) -> String {
 
 #[test]
 fn a_looped_evening_as_text() {
-    assert_snapshot!(example("quillmere-evening.show", "mill-tower.rig", "text"));
+    assert_snapshot!(steady(&example(
+        "quillmere-evening.show",
+        "mill-tower.rig",
+        "text"
+    )));
 }
 
 #[test]
 fn a_crossed_rig_as_text() {
-    assert_snapshot!(example("velloe-lissajous.show", "school-hall.rig", "text"));
+    assert_snapshot!(steady(&example(
+        "velloe-lissajous.show",
+        "school-hall.rig",
+        "text"
+    )));
 }
 
 #[test]
 fn a_geared_pair_as_markdown() {
-    assert_snapshot!(example("ostrel-regatta.show", "boathouse.rig", "md"));
+    assert_snapshot!(steady(&example(
+        "ostrel-regatta.show",
+        "boathouse.rig",
+        "md"
+    )));
 }
 
 #[test]
 fn a_show_with_a_run_down_as_csv() {
-    assert_snapshot!(example("brackhead-opening.show", "mill-tower.rig", "csv"));
+    assert_snapshot!(steady(&example(
+        "brackhead-opening.show",
+        "mill-tower.rig",
+        "csv"
+    )));
 }
 
 #[test]
@@ -80,7 +97,7 @@ fn a_rig_without_marks_as_json() {
         parsed["cues"][0]["peaks"]["a_jerk"],
         serde_json::Value::Null
     );
-    assert_snapshot!(sheet);
+    assert_snapshot!(steady(&sheet));
 }
 
 #[test]

@@ -54,7 +54,11 @@ fn a_table_of_unknown_ending_needs_a_form() {
     let ran = Run::new(&["compile", "harbour.show", "-o", "table.dat"])
         .with_harbour()
         .run();
-    ran.says(2, &[], &["table.dat does not end in .csv or .json"]);
+    ran.says(
+        2,
+        &[],
+        &["table.dat does not end in .csv, .json, .h or .pack"],
+    );
     assert_eq!(ran.files(), ["harbour.show", "north-wall.rig"]);
 }
 

@@ -1,3 +1,4 @@
+use crate::steady::steady;
 use crate::{evening, sheet, there_and_back};
 use insta::assert_snapshot;
 use phasewright::finding::{Code, Finding, Place};
@@ -7,22 +8,22 @@ use std::sync::Arc;
 
 #[test]
 fn text_of_a_loop() {
-    assert_snapshot!(sheet(&evening(), &[], Form::Text));
+    assert_snapshot!(steady(&sheet(&evening(), &[], Form::Text)));
 }
 
 #[test]
 fn text_of_a_show_with_a_run_down() {
-    assert_snapshot!(sheet(&there_and_back(), &[], Form::Text));
+    assert_snapshot!(steady(&sheet(&there_and_back(), &[], Form::Text)));
 }
 
 #[test]
 fn markdown_of_a_loop() {
-    assert_snapshot!(sheet(&evening(), &[], Form::Markdown));
+    assert_snapshot!(steady(&sheet(&evening(), &[], Form::Markdown)));
 }
 
 #[test]
 fn json_of_a_loop() {
-    assert_snapshot!(sheet(&evening(), &[], Form::Json));
+    assert_snapshot!(steady(&sheet(&evening(), &[], Form::Json)));
 }
 
 #[test]

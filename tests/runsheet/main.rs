@@ -11,6 +11,8 @@
 mod forms;
 #[path = "../setpoint/plans.rs"]
 mod plans;
+#[path = "../common/steady.rs"]
+mod steady;
 mod values;
 
 use phasewright::finding::{Finding, Locator, Sources};
