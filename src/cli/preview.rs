@@ -9,7 +9,8 @@ use crate::finding::render::counted;
 use crate::finding::{Finding, Severity, ordered};
 use crate::plan::Plan;
 use crate::preview::facts::{Subject, subjects};
-use crate::preview::{Look, Show, cue, png, sheet, terminal};
+use crate::preview::scene::Scene;
+use crate::preview::{Look, Show, cue, page, png, sheet, terminal};
 use clap::Args;
 use rayon::prelude::{IntoParallelRefIterator, ParallelIterator};
 use std::collections::BTreeSet;
@@ -63,6 +64,9 @@ impl Preview {
             return Ok(verdict.code);
         };
         let subjects = self.chosen(&plan)?;
+        // The page plays the whole show, so it is made with the sheet.
+        let scene = (!self.terminal && self.only.is_empty())
+            .then(|| Scene::new(&plan, &findings, &loader.sources));
         let show = Show::new(&plan, findings);
         if self.terminal {
             let screen = terminal::Screen {
@@ -76,10 +80,12 @@ impl Preview {
         }
         if let Some(output) = &self.output {
             let progress = Progress::pictures(subjects.len(), common, streams);
-            let count = self.draw(&show, &subjects, output, &progress)?;
+            let count = self.draw(&show, scene.as_ref(), &subjects, output, &progress)?;
             progress.done();
             if wants_words(common) {
-                let words = format!("{} in {}", counted(count, "picture"), output.display());
+                let page = if scene.is_some() { " and a page" } else { "" };
+                let pictures = counted(count, "picture");
+                let words = format!("{pictures}{page} in {}", output.display());
                 drop(writeln!(streams.stderr, "{words}"));
             }
         }
@@ -105,10 +111,11 @@ impl Preview {
         Ok(all.into_iter().filter(wanted).collect())
     }
 
-    /// Draws into a folder and says how many pictures there are.
+    /// Draws into a folder, with the page where there is a scene, and says how many pictures there are.
     fn draw(
         &self,
         show: &Show,
+        scene: Option<&Scene>,
         subjects: &[Subject],
         output: &Path,
         progress: &Progress,
@@ -122,7 +129,7 @@ impl Preview {
             .iter()
             .map(|subject| subject.file(show.plan))
             .collect();
-        let sheets = ["sheet.svg", "sheet.png"];
+        let sheets = ["sheet.svg", "sheet.png", "index.html"];
         for name in names.iter().map(String::as_str) {
             folder.expect(name)?;
         }
@@ -150,7 +157,12 @@ impl Preview {
                 .map_err(|why| Failure::Cannot(format!("cannot draw sheet.png: {why}")))?;
             folder.put("sheet.svg", text.as_bytes())?;
             folder.put("sheet.png", &pixels)?;
-            count += sheets.len();
+            count += 2;
+        }
+        if let Some(scene) = scene {
+            let text = page::page(show, scene)
+                .map_err(|why| Failure::Cannot(format!("cannot make index.html: {why}")))?;
+            folder.put("index.html", text.as_bytes())?;
         }
         folder.finish(whole)?;
         Ok(count)

@@ -14,6 +14,8 @@ pub mod cue;
 pub mod facts;
 pub mod light;
 pub mod moments;
+pub mod numeral;
+pub mod page;
 pub mod png;
 pub mod scene;
 pub mod sheet;
@@ -69,18 +71,24 @@ impl<'p> Show<'p> {
         }
     }
 
-    /// How the pictures were made, for those who want to know.
+    /// How wide the beam is drawn.
     #[must_use]
-    pub fn small_print(&self) -> String {
+    pub fn beam_words(&self) -> String {
         let beam = self.optics.beam();
-        let width = if beam.known {
+        if beam.known {
             format!("beam {:.1} mm wide on the wall", beam.width * 1000.0)
         } else {
             "beam width assumed, 1/80 of the largest radius".to_owned()
-        };
+        }
+    }
+
+    /// How the pictures were made, for those who want to know.
+    #[must_use]
+    pub fn small_print(&self) -> String {
         format!(
-            "{}; each picture is the light of one repeat period, at least 1/50 s; brightness goes with the cube root of time per length; {width}",
-            self.optics.model().words()
+            "{}; each picture is the light of one repeat period, at least 1/50 s; brightness goes with the cube root of time per length; {}",
+            self.optics.model().words(),
+            self.beam_words()
         )
     }
 }

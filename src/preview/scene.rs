@@ -15,6 +15,7 @@
 //! The spot is `optics::Optics::spot` of both phases: `optics.trace` holds all that the exact trace needs.
 
 use super::moments::legs_of;
+use super::numeral::{Figure, Precise};
 use crate::exact::{Rational, Ticks, to_f64};
 use crate::finding::{Finding, Locator, Sources};
 use crate::optics::path::{LawPath, LegPath, RotorPath};
@@ -23,10 +24,13 @@ use crate::optics::{Optics, colour};
 use crate::plan::{LegKind, Plan};
 use crate::rig::{Pair, Projection, RotorId, Turning};
 use crate::setpoint::{program, table_id};
-use serde::{Serialize, Serializer};
+use serde::Serialize;
 
 /// Version of the scene.
 pub const SCENE_FORMAT: u32 = 1;
+
+/// Legs of a scene at most: what comes after is left out, and with it the loop.
+pub const MOST_LEGS: usize = 20_000;
 
 /// The whole show.
 #[derive(Debug, Serialize)]
@@ -42,13 +46,13 @@ pub struct Scene {
     /// Title of the rig.
     pub rig: Option<String>,
     /// Spacing of set-points.
-    pub tick_s: Figure,
+    pub tick_s: Precise,
     /// The whole table.
-    pub run_s: Figure,
+    pub run_s: Precise,
     /// End of the run-up, from which show time counts.
-    pub show_start_s: Figure,
+    pub show_start_s: Precise,
     /// Where the loop starts again; null with a run-down.
-    pub loop_start_s: Option<Figure>,
+    pub loop_start_s: Option<Precise>,
     /// From phases to the wall.
     pub optics: OpticsScene,
     /// The motors' limits.
@@ -61,26 +65,8 @@ pub struct Scene {
     pub legs: Vec<LegScene>,
     /// Everything found, with times.
     pub findings: Vec<FindingScene>,
-}
-
-/// A number for the page: ten significant digits.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub struct Figure(pub f64);
-
-impl Serialize for Figure {
-    fn serialize<S: Serializer>(&self, to: S) -> Result<S::Ok, S::Error> {
-        let rounded: f64 = format!("{:.9e}", self.0).parse().unwrap_or(0.0);
-        #[expect(
-            clippy::cast_possible_truncation,
-            clippy::float_cmp,
-            reason = "whole numbers are written without a point; below 2⁵³ none is cut"
-        )]
-        if libm::trunc(rounded) == rounded && rounded.abs() < 9e15 {
-            to.serialize_i64(rounded as i64)
-        } else {
-            to.serialize_f64(rounded)
-        }
-    }
+    /// Cues after the last one here, see [`MOST_LEGS`].
+    pub left_out: usize,
 }
 
 /// One of each rotor.
@@ -111,9 +97,9 @@ pub struct OpticsScene {
     /// Whether lengths are metres; else the largest radius is 1.
     pub metres: bool,
     /// Largest distance of a spot from the middle.
-    pub extent: Figure,
+    pub extent: Precise,
     /// First-order reaches.
-    pub reach: Pair2<Figure>,
+    pub reach: Pair2<Precise>,
     /// The exact trace; null where the first-order sum is drawn.
     pub trace: Option<TraceScene>,
     /// Width of the spot on the wall.
@@ -130,11 +116,11 @@ pub struct OpticsScene {
 #[derive(Debug, Serialize)]
 pub struct TraceScene {
     /// Direction of the light before mirror a.
-    pub incoming: [Figure; 3],
+    pub incoming: [Precise; 3],
     /// From mirror a to mirror b.
-    pub a_to_b: [Figure; 3],
+    pub a_to_b: [Precise; 3],
     /// Second mirror to wall.
-    pub throw: Figure,
+    pub throw: Precise,
     /// Each mirror.
     pub mirrors: Pair2<MirrorScene>,
 }
@@ -144,18 +130,18 @@ pub struct TraceScene {
 #[derive(Debug, Serialize)]
 pub struct MirrorScene {
     /// The untilted normal.
-    pub shaft: [Figure; 3],
+    pub shaft: [Precise; 3],
     /// The horizontal lean that throws the light right.
-    pub across: [Figure; 3],
+    pub across: [Precise; 3],
     /// Tilt or swing, in radians.
-    pub tilt: Figure,
+    pub tilt: Precise,
 }
 
 /// A motor and its limits, at the motor; null: no limit.
 #[derive(Debug, Serialize)]
 pub struct RotorScene {
     /// Motor turns for one counter-clockwise turn of the mirror, signed.
-    pub motor_per_mirror: Figure,
+    pub motor_per_mirror: Precise,
     /// Largest speed.
     pub top_rpm: Figure,
     /// Below this it does not run evenly.
@@ -179,14 +165,14 @@ pub enum LawScene {
     /// Evenly spaced values.
     Sampled {
         /// s, first and last included.
-        s: Vec<Figure>,
+        s: Vec<Precise>,
         /// ∫s.
-        area: Vec<Figure>,
+        area: Vec<Precise>,
     },
     /// The closed form.
     Scurve {
         /// r.
-        share: Figure,
+        share: Precise,
     },
 }
 
@@ -208,11 +194,11 @@ pub struct CueScene {
     /// How often it repeats.
     pub repeat_hz: Figure,
     /// Start of its transition.
-    pub start_s: Figure,
+    pub start_s: Precise,
     /// Start of its hold.
-    pub hold_start_s: Figure,
+    pub hold_start_s: Precise,
     /// End of its hold.
-    pub end_s: Figure,
+    pub end_s: Precise,
     /// Spin in degrees a second.
     pub spin_deg_s: Figure,
     /// Laser level, 0 to 1.
@@ -227,9 +213,9 @@ pub struct LegScene {
     /// The number in the table's cue column.
     pub cue: u32,
     /// Start in seconds of table time.
-    pub start_s: Figure,
+    pub start_s: Precise,
     /// Length in seconds.
-    pub length_s: Figure,
+    pub length_s: Precise,
     /// Laser level, 0 to 1.
     pub beam: Figure,
     /// Mirror a.
@@ -242,22 +228,22 @@ pub struct LegScene {
 #[derive(Debug, Serialize)]
 pub struct MoveScene {
     /// Phase at the start, [0, 1).
-    pub start: Figure,
+    pub start: Precise,
     /// Speed at the start.
-    pub from: Figure,
+    pub from: Precise,
     /// Change of speed.
     #[serde(skip_serializing_if = "is_none")]
-    pub change: Figure,
+    pub change: Precise,
     /// The landing's correction.
     #[serde(skip_serializing_if = "is_none")]
-    pub correction: Figure,
+    pub correction: Precise,
     /// Number of the law.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub law: Option<usize>,
 }
 
-fn is_none(figure: &Figure) -> bool {
-    figure.0 == 0.0
+fn is_none(value: &Precise) -> bool {
+    value.0 == 0.0
 }
 
 /// One finding.
@@ -286,25 +272,33 @@ impl Scene {
     #[must_use]
     pub fn new(plan: &Plan, findings: &[Finding], sources: &Sources) -> Self {
         let mut laws = Vec::new();
-        let legs = (0..plan.legs.len())
+        let shown = plan.legs.len().min(MOST_LEGS);
+        let whole = shown == plan.legs.len();
+        let legs = (0..shown)
             .filter_map(|index| leg(plan, index, &mut laws))
             .collect();
-        let seconds = |ticks: Ticks| Figure(ticks.time(plan.tick()).to_f64());
+        let seconds = |ticks: Ticks| Precise(ticks.time(plan.tick()).to_f64());
+        let end = shown
+            .checked_sub(1)
+            .and_then(|last| plan.legs.get(last))
+            .map_or(Ticks(0), |leg| Ticks(leg.start.0 + leg.ticks.0));
         let locator = Locator::new(sources);
+        let cues = cues(plan, shown, &locator);
         Self {
             format: SCENE_FORMAT,
             program: program(),
             table: table_id(plan),
             title: plan.show.title.clone(),
             rig: plan.rig.title.clone(),
-            tick_s: Figure(plan.tick().to_f64()),
-            run_s: seconds(plan.total()),
+            tick_s: Precise(plan.tick().to_f64()),
+            run_s: seconds(end),
             show_start_s: seconds(plan.show_start()),
-            loop_start_s: plan.loop_start().map(seconds),
+            loop_start_s: plan.loop_start().filter(|_| whole).map(seconds),
             optics: optics(&Optics::of(&plan.rig)),
             rotors: Pair::each(|id| rotor(plan, id)).into(),
             laws,
-            cues: cues(plan, &locator),
+            left_out: plan.show.order.len().saturating_sub(cues.len()),
+            cues,
             legs,
             findings: findings
                 .iter()
@@ -333,10 +327,10 @@ fn optics(optics: &Optics) -> OpticsScene {
         },
         model: optics.model().words(),
         metres: optics.in_metres(),
-        extent: Figure(optics.extent()),
+        extent: Precise(optics.extent()),
         reach: Pair2 {
-            a: Figure(reach.a),
-            b: Figure(reach.b),
+            a: Precise(reach.a),
+            b: Precise(reach.b),
         },
         trace: optics.trace().map(trace),
         beam_width: Figure(beam.width),
@@ -350,20 +344,20 @@ fn optics(optics: &Optics) -> OpticsScene {
 }
 
 fn trace(trace: &Trace) -> TraceScene {
-    let list = |v: Vec3| [v.x, v.y, v.z].map(Figure);
+    let list = |v: Vec3| [v.x, v.y, v.z].map(Precise);
     let geometry = trace.geometry();
     let mirrors = Pair::each(|id| {
         let (shaft, across) = trace.mirror(id);
         MirrorScene {
             shaft: list(shaft),
             across: list(across),
-            tilt: Figure(*geometry.angle.of(id)),
+            tilt: Precise(*geometry.angle.of(id)),
         }
     });
     TraceScene {
         incoming: list(trace.incoming()),
         a_to_b: list(trace.a_to_b()),
-        throw: Figure(geometry.throw),
+        throw: Precise(geometry.throw),
         mirrors: mirrors.into(),
     }
 }
@@ -372,7 +366,7 @@ fn rotor(plan: &Plan, id: RotorId) -> RotorScene {
     let rotor = plan.rig.rotor(id);
     let rpm = |value: &Rational| Figure(to_f64(value) * 60.0);
     RotorScene {
-        motor_per_mirror: Figure(to_f64(&rotor.motor_per_mirror())),
+        motor_per_mirror: Precise(to_f64(&rotor.motor_per_mirror())),
         top_rpm: rpm(rotor.top_speed.value.value()),
         stall_rpm: rpm(rotor.stall_speed.value.value()),
         acceleration_rpm_s: rpm(rotor.acceleration.value.value()),
@@ -391,10 +385,10 @@ fn leg(plan: &Plan, index: usize, laws: &mut Vec<LawScene>) -> Option<LegScene> 
     let leg = plan.legs.get(index)?;
     let path = LegPath::of(plan, index)?;
     let mut mirror = |rotor: &RotorPath| MoveScene {
-        start: Figure(rotor.start),
-        from: Figure(rotor.from),
-        change: Figure(rotor.change),
-        correction: Figure(rotor.correction),
+        start: Precise(rotor.start),
+        from: Precise(rotor.from),
+        change: Precise(rotor.change),
+        correction: Precise(rotor.correction),
         law: number_of(law(&rotor.law), laws),
     };
     Some(LegScene {
@@ -406,8 +400,8 @@ fn leg(plan: &Plan, index: usize, laws: &mut Vec<LawScene>) -> Option<LegScene> 
             LegKind::RunDown => "run-down",
         },
         cue: leg.cue,
-        start_s: Figure(path.start),
-        length_s: Figure(path.length),
+        start_s: Precise(path.start),
+        length_s: Precise(path.length),
         beam: Figure(f64::from(leg.beam) / 255.0),
         a: mirror(&path.rotors.a),
         b: mirror(&path.rotors.b),
@@ -415,11 +409,11 @@ fn leg(plan: &Plan, index: usize, laws: &mut Vec<LawScene>) -> Option<LegScene> 
 }
 
 fn law(path: &LawPath) -> Option<LawScene> {
-    let list = |values: &[f64]| values.iter().copied().map(Figure).collect();
+    let list = |values: &[f64]| values.iter().copied().map(Precise).collect();
     match path {
         LawPath::Still => None,
         LawPath::Scurve(share) => Some(LawScene::Scurve {
-            share: Figure(*share),
+            share: Precise(*share),
         }),
         LawPath::Sampled(samples) => Some(LawScene::Sampled {
             s: list(&samples.speed),
@@ -440,11 +434,11 @@ fn number_of(law: Option<LawScene>, laws: &mut Vec<LawScene>) -> Option<usize> {
     Some(laws.len() - 1)
 }
 
-fn cues(plan: &Plan, locator: &Locator) -> Vec<CueScene> {
-    let time = |ticks: Ticks| Figure(ticks.time(plan.tick()).to_f64());
+fn cues(plan: &Plan, shown: usize, locator: &Locator) -> Vec<CueScene> {
+    let time = |ticks: Ticks| Precise(ticks.time(plan.tick()).to_f64());
     let mut before: Option<Ticks> = None;
     let mut cues = Vec::new();
-    for leg in &plan.legs {
+    for leg in plan.legs.iter().take(shown) {
         if leg.kind != LegKind::Hold {
             before = Some(leg.start);
             continue;
@@ -480,6 +474,9 @@ fn found(plan: &Plan, finding: &Finding, locator: &Locator) -> FindingScene {
         file: locator.name(finding.place.file).to_owned(),
         line: locator.start(finding.place).line,
         count: finding.count,
-        legs: legs_of(plan, finding),
+        legs: legs_of(plan, finding)
+            .into_iter()
+            .filter(|leg| *leg < MOST_LEGS)
+            .collect(),
     }
 }

@@ -16,7 +16,7 @@ use num_traits::Signed;
 const EXACT_PLACES: u32 = 12;
 
 /// What everyone in the room must know; the same on every sheet.
-pub(super) const CAUTIONS: [&str; 3] = [
+pub(crate) const CAUTIONS: [&str; 3] = [
     "Laser light can injure an eye before it can blink, also by reflection. Nobody looks into the beam or \
      along it at the mirrors, and it never crosses where heads can be. A moving beam is no protection: \
      a mirror that stops leaves it standing still. Know how to switch it off.",
