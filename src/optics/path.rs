@@ -13,6 +13,7 @@ use crate::motion::inside::Inside;
 use crate::motion::{Move, Shape};
 use crate::plan::{LegKind, Plan};
 use crate::rig::{Pair, RotorId};
+use std::collections::HashMap;
 
 /// Pieces of a sampled law.
 pub const NODES: u64 = 256;
@@ -35,6 +36,22 @@ pub struct Samples {
     pub speed: Vec<f64>,
     /// S(u) = ∫s.
     pub area: Vec<f64>,
+}
+
+/// Laws read so far: a show of a thousand legs has a handful.
+#[derive(Clone, Debug, Default)]
+pub struct Laws(HashMap<Shape, LawPath>);
+
+impl Laws {
+    fn of(&mut self, shape: &Shape) -> LawPath {
+        match shape {
+            Shape::Law(_) => {
+                let law = self.0.entry(shape.clone());
+                law.or_insert_with(|| LawPath::of(shape)).clone()
+            }
+            _ => LawPath::of(shape),
+        }
+    }
 }
 
 impl LawPath {
@@ -174,7 +191,7 @@ pub struct State {
 }
 
 impl RotorPath {
-    fn of(plan: &Plan, index: usize, id: RotorId) -> Option<Self> {
+    fn of(plan: &Plan, index: usize, id: RotorId, laws: &mut Laws) -> Option<Self> {
         let leg = plan.legs.get(index)?;
         let one = plan.move_of(index, id)?;
         let rotor = plan.rig.rotor(id);
@@ -190,7 +207,7 @@ impl RotorPath {
             } else {
                 mirror(one.correction.to_f64())
             },
-            law: LawPath::of(&one.shape),
+            law: laws.of(&one.shape),
         })
     }
 
@@ -234,11 +251,16 @@ impl LegPath {
     /// Both mirrors over leg number `index` of a plan; `None` past the last leg.
     #[must_use]
     pub fn of(plan: &Plan, index: usize) -> Option<Self> {
+        Self::read(plan, index, &mut Laws::default())
+    }
+    /// The same, with the laws that other legs have used.
+    #[must_use]
+    pub fn read(plan: &Plan, index: usize, laws: &mut Laws) -> Option<Self> {
         let leg = plan.legs.get(index)?;
         Some(Self {
             rotors: Pair {
-                a: RotorPath::of(plan, index, RotorId::A)?,
-                b: RotorPath::of(plan, index, RotorId::B)?,
+                a: RotorPath::of(plan, index, RotorId::A, laws)?,
+                b: RotorPath::of(plan, index, RotorId::B, laws)?,
             },
             length: leg.ticks.time(plan.tick()).to_f64(),
             start: leg.start.time(plan.tick()).to_f64(),

@@ -18,7 +18,7 @@ use super::moments::legs_of;
 use super::numeral::{Figure, Precise};
 use crate::exact::{Rational, Ticks, to_f64};
 use crate::finding::{Finding, Locator, Sources};
-use crate::optics::path::{LawPath, LegPath, RotorPath};
+use crate::optics::path::{LawPath, Laws, LegPath, RotorPath};
 use crate::optics::trace::{Trace, Vec3};
 use crate::optics::{Optics, colour};
 use crate::plan::{LegKind, Plan};
@@ -271,11 +271,11 @@ impl Scene {
     /// The scene of a plan with its findings (ordered as they shall be listed).
     #[must_use]
     pub fn new(plan: &Plan, findings: &[Finding], sources: &Sources) -> Self {
-        let mut laws = Vec::new();
+        let (mut laws, mut read) = (Vec::new(), Laws::default());
         let shown = plan.legs.len().min(MOST_LEGS);
         let whole = shown == plan.legs.len();
         let legs = (0..shown)
-            .filter_map(|index| leg(plan, index, &mut laws))
+            .filter_map(|index| leg(plan, index, &mut read, &mut laws))
             .collect();
         let seconds = |ticks: Ticks| Precise(ticks.time(plan.tick()).to_f64());
         let end = shown
@@ -381,9 +381,9 @@ fn rotor(plan: &Plan, id: RotorId) -> RotorScene {
     }
 }
 
-fn leg(plan: &Plan, index: usize, laws: &mut Vec<LawScene>) -> Option<LegScene> {
+fn leg(plan: &Plan, index: usize, read: &mut Laws, laws: &mut Vec<LawScene>) -> Option<LegScene> {
     let leg = plan.legs.get(index)?;
-    let path = LegPath::of(plan, index)?;
+    let path = LegPath::read(plan, index, read)?;
     let mut mirror = |rotor: &RotorPath| MoveScene {
         start: Precise(rotor.start),
         from: Precise(rotor.from),

@@ -27,9 +27,10 @@ fn preview(more: &[&str]) -> Run {
     Run::new(&arguments).with_harbour()
 }
 
-const ALL: [&str; 6] = [
+const ALL: [&str; 7] = [
     "cue-001.svg",
     "cue-002.svg",
+    "index.html",
     "loop.svg",
     "run-up.svg",
     "sheet.png",
@@ -39,7 +40,7 @@ const ALL: [&str; 6] = [
 #[test]
 fn a_show_becomes_a_folder_of_pictures() {
     let ran = preview(&[]).run();
-    ran.says(0, &[], &["6 pictures in out"]);
+    ran.says(0, &[], &["6 pictures and a page in out"]);
     assert_eq!(names(&ran), ALL);
     let sheet = fs::read_to_string(ran.folder().join("out/sheet.svg")).unwrap();
     assert!(sheet.contains("Harbour Hall") && sheet.contains("deltoid"));
@@ -56,11 +57,15 @@ fn own_files_of_an_earlier_run_go_and_foreign_ones_stay() {
     let ran = preview(&[])
         .with("out/cue-017.svg", own)
         .with("out/run-down.svg", own)
+        .with(
+            "out/index.html",
+            "<!doctype html>\n<!-- drawn by phasewright preview -->\n",
+        )
         .with("out/cue-001.svg", own)
         .with("out/cue-018.svg", "<svg>a drawing of somebody else</svg>")
         .with("out/notes.txt", "foreign")
         .run();
-    ran.says(0, &[], &["pictures in out"]);
+    ran.says(0, &[], &["pictures and a page in out"]);
     let mut wanted: Vec<&str> = ALL.to_vec();
     wanted.extend(["cue-018.svg", "notes.txt"]);
     wanted.sort_unstable();
@@ -105,7 +110,11 @@ fn a_folder_that_cannot_be_written_is_a_clear_error() {
 fn a_show_that_breaks_limits_is_drawn_and_one_with_text_errors_is_not() {
     let quick = SHOW.replace("cue 5:-4 morph 4 s", "cue 5:-4 morph 100 ms");
     let ran = preview(&[]).with("harbour.show", quick).run();
-    ran.says(1, &[], &["limit/acceleration", "6 pictures in out"]);
+    ran.says(
+        1,
+        &[],
+        &["limit/acceleration", "6 pictures and a page in out"],
+    );
     assert_eq!(names(&ran), ALL);
     let ran = preview(&[])
         .with("harbour.show", SHOW.replace("deltoid", "deltiod"))

@@ -13,7 +13,7 @@ const SHORTEST = 1 / 50;
 const LOOKS = 96;
 const MOST_LOOKS = 150000;
 // How bright a line is that the beam would draw if it were on.
-const GHOST_LIGHT = 0.02;
+const GHOST_LIGHT = 0.07;
 const WALL = [10, 13, 19];
 const GHOST = [150, 158, 174];
 const SHADES = 2048;

@@ -12,8 +12,8 @@ function listFindings(list, scene, course, go) {
     const head = element("p");
     head.append(element("strong", finding.severity), " ", element("code", finding.code));
     if (finding.count > 1) head.append(` ${finding.count} times`);
-    item.append(head, element("p", `${finding.message}.`));
-    if (finding.help) item.append(element("p", finding.help, { className: "help" }));
+    item.append(head, quoting(`${finding.message}.`));
+    if (finding.help) item.append(quoting(finding.help));
     const foot = element("p", undefined, { className: "where" });
     foot.append(element("bdi", finding.file), ` line ${finding.line}`);
     for (const index of finding.legs.slice(0, 3)) foot.append(" ", goButton(scene, course, index, finding, go));
@@ -23,6 +23,13 @@ function listFindings(list, scene, course, go) {
   if (shown.length < scene.findings.length) {
     list.append(element("li", `${scene.findings.length - shown.length} more are not listed here.`));
   }
+}
+
+// A paragraph in which what stands between backticks is code.
+function quoting(words) {
+  const made = element("p");
+  made.append(...words.split("`").map((part, at) => (at % 2 === 1 ? element("code", part) : part)));
+  return made;
 }
 
 function goButton(scene, course, index, finding, go) {
