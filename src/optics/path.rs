@@ -13,7 +13,6 @@ use crate::motion::inside::Inside;
 use crate::motion::{Move, Shape};
 use crate::plan::{LegKind, Plan};
 use crate::rig::{Pair, RotorId};
-use std::collections::HashMap;
 
 /// Pieces of a sampled law.
 pub const NODES: u64 = 256;
@@ -40,17 +39,21 @@ pub struct Samples {
 
 /// Laws read so far: a show of a thousand legs has a handful.
 #[derive(Clone, Debug, Default)]
-pub struct Laws(HashMap<Shape, LawPath>);
+pub struct Laws(Vec<(Shape, LawPath)>);
 
 impl Laws {
+    /// A law, read if it is none of the last hundred.
     fn of(&mut self, shape: &Shape) -> LawPath {
-        match shape {
-            Shape::Law(_) => {
-                let law = self.0.entry(shape.clone());
-                law.or_insert_with(|| LawPath::of(shape)).clone()
-            }
-            _ => LawPath::of(shape),
+        if !matches!(shape, Shape::Law(_)) {
+            return LawPath::of(shape);
         }
+        let last = self.0.iter().rev().take(100);
+        if let Some((_, law)) = last.into_iter().find(|(known, _)| known == shape) {
+            return law.clone();
+        }
+        let law = LawPath::of(shape);
+        self.0.push((shape.clone(), law.clone()));
+        law
     }
 }
 

@@ -3,17 +3,20 @@
 use crate::root;
 use std::path::{Path, PathBuf};
 
-/// Files below a folder of the project that end in `.rs` or `.pest`.
+/// Files below a folder of the project that somebody wrote: Rust, grammars, and what the page is made of.
 fn sources(folder: &Path) -> Vec<PathBuf> {
     let mut found = Vec::new();
     for entry in std::fs::read_dir(folder).unwrap() {
         let path = entry.unwrap().path();
         if path.is_dir() {
-            found.extend(sources(&path));
-        } else if path
-            .extension()
-            .is_some_and(|own| own == "rs" || own == "pest")
-        {
+            if !path.ends_with("node_modules") {
+                found.extend(sources(&path));
+            }
+        } else if path.extension().is_some_and(|own| {
+            ["rs", "pest", "js", "mjs", "css", "html"]
+                .iter()
+                .any(|written| own == *written)
+        }) {
             found.push(path);
         }
     }
