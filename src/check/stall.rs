@@ -57,10 +57,18 @@ impl<'a> Judge<'a> {
                     ))
                 })
                 .collect();
+            let help = if plan
+                .transition(leg)
+                .is_some_and(|transition| transition.dark)
+            {
+                "a figure with the same senses before it would not pass through"
+            } else {
+                "a figure with the same senses before it, or a dark morph, would not show it"
+            };
             let first = crossing.first().copied().unwrap_or(RotorId::A);
             Finding::new(Code::StallCrossing, place, spent.join("; "))
                 .also_at(plan.rig.rotor(first).stall_speed.place, "the stall speed")
-                .help("a figure with the same senses before it, or a dark morph, would not show it")
+                .help(help)
         });
     }
 }

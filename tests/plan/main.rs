@@ -13,6 +13,7 @@ mod ends;
 mod fastest;
 mod hints;
 mod one_way;
+mod stall;
 mod starts;
 
 /// A rig with everything: index on both, unequal limits, jerk.
