@@ -240,3 +240,42 @@ fn damaged_tables_are_not_opened_and_damaged_blocks_brake() {
     assert!(braking.len() > 10);
     assert_eq!(braking.last().unwrap().steps, [0, 0]);
 }
+
+/// Executions of the fuzzer in a test; hours of it are for people (DEVELOPERS.md).
+const FUZZED: &str = "20000";
+
+#[test]
+fn the_fuzzer_finds_nothing_at_first_sight() {
+    if !there(&["clang"]) {
+        return;
+    }
+    let folder = TempDir::new().unwrap();
+    let include = format!("-I{}", player().display());
+    let source = sources().join("fuzz.c");
+    let mut words = vec!["clang", "-std=c99"];
+    words.extend(STRICT);
+    words.extend([
+        "-O1",
+        "-g",
+        "-fsanitize=fuzzer,address,undefined",
+        "-fno-sanitize-recover=all",
+        &include,
+        source.to_str().unwrap(),
+        "-o",
+        "fuzz",
+    ]);
+    run(folder.path(), &words);
+    let corpus = folder.path().join("corpus");
+    fs::create_dir(&corpus).unwrap();
+    for (index, plan) in [tables::looped(), tables::ending()].iter().enumerate() {
+        for content in [Content::Rows, Content::Knots(1)] {
+            let name = format!("{index}-{content:?}");
+            fs::write(corpus.join(name), tables::pack(plan, content)).unwrap();
+        }
+    }
+    let runs = format!("-runs={FUZZED}");
+    let words = ["./fuzz", "corpus", "-seed=1", "-max_len=4096", &runs];
+    let said = run(folder.path(), &words).stderr;
+    let said = String::from_utf8_lossy(&said).into_owned();
+    assert!(said.contains(&format!("Done {FUZZED} runs")), "{said}");
+}

@@ -68,13 +68,16 @@ static void play(phw_player *player) {
     phw_setpoint point;
     unsigned tick;
     for (tick = 0; tick < 3000; tick++) {
-        if (!phw_tick(player, &point)) {
+        bool dark = phw_state(player) != PHW_RUNNING;
+        bool more = phw_tick(player, &point);
+        /* Once it no longer runs, and where it says that all is over, there is no light. */
+        if ((dark || !more) && point.beam != 0) {
+            abort();
+        }
+        if (!more) {
             break;
         }
         if (point.a_counts >= player->rotor[0].counts || point.b_counts >= player->rotor[1].counts) {
-            abort();
-        }
-        if (phw_state(player) != PHW_RUNNING && tick > 0 && point.beam != 0 && player->beam != 0) {
             abort();
         }
     }
