@@ -1,7 +1,7 @@
 //! Every ratio up to a bound on one sheet, and what a rig cannot draw.
 
 use super::light::{self, Grain};
-use super::svg::{Frame, Svg, TEXT, number};
+use super::svg::{Frame, Svg, TEXT, number, wrapped};
 use super::tile::{Lit, Style, light, tile};
 use super::{Look, facts};
 use crate::exact::{Rational, Speed, decimal, ratio, to_f64, whole};
@@ -138,7 +138,9 @@ pub fn atlas(rig: &Rig, up_to: i64, look: &Look) -> String {
     #[expect(clippy::cast_precision_loss, reason = "a few dozen")]
     let bound = up_to as f64;
     let width = 2.0 * EDGE + (2.0 * bound + 1.0) * CELL;
-    let height = HEAD + bound * TALL + 62.0;
+    let legend = wrapped(LEGEND, 11.0, width - 2.0 * EDGE, 6);
+    #[expect(clippy::cast_precision_loss, reason = "a few lines")]
+    let height = HEAD + bound * TALL + 46.0 + 16.0 * legend.len() as f64;
     let title = format!(
         "{}: what it draws",
         rig.title.as_deref().unwrap_or("Untitled rig")
@@ -174,7 +176,11 @@ pub fn atlas(rig: &Rig, up_to: i64, look: &Look) -> String {
         let at = corner(cell.place);
         draw(&mut svg, rig, cell, style, at);
     }
-    svg.text((EDGE, height - 34.0), "s f", LEGEND);
+    let mut line = HEAD + bound * TALL + 28.0;
+    for words in &legend {
+        svg.text((EDGE, line), "s f", words);
+        line += 16.0;
+    }
     svg.text((EDGE, height - 16.0), "xs f", optics.model().words());
     let shown = look.width.unwrap_or(width);
     svg.finish(

@@ -15,6 +15,11 @@ const LOOKS: u32 = 600;
 /// Most of what counts as within a limit.
 const WITHIN: f64 = 1.0 + 1e-6;
 
+/// Room for labels at the left of the charts.
+pub const LEFT: f64 = 62.0;
+/// Room for labels at their right.
+pub const RIGHT: f64 = 96.0;
+
 /// The dash of rotor b's curves: told apart without colour too.
 pub const DASH_B: &str = "7 3";
 
@@ -100,8 +105,8 @@ pub fn charts(svg: &mut Svg, frame: Frame, plan: &Plan, path: &LegPath, marks: &
         }
     });
     let inner = Frame {
-        x: frame.x + 62.0,
-        width: frame.width - 62.0 - 84.0,
+        x: frame.x + LEFT,
+        width: frame.width - LEFT - RIGHT,
         ..frame
     };
     let gap = 30.0;
@@ -148,7 +153,7 @@ fn speeds(svg: &mut Svg, frame: Frame, motors: &Pair<Motor>) {
         low,
         high: high.max(low + 1.0),
     };
-    svg.text((frame.x, frame.y - 7.0), "s b", "motor speed, rpm");
+    svg.text((frame.x, frame.y - 7.0), "s b hl", "motor speed, rpm");
     plane.level(svg, 0.0, HAIR, "", "0");
     for (index, top) in tops.iter().enumerate() {
         if index == 1 && (tops[0] - top).abs() < 1e-9 {
@@ -204,7 +209,7 @@ fn accelerations(svg: &mut Svg, frame: Frame, motors: &Pair<Motor>) {
     };
     svg.text(
         (frame.x, frame.y - 7.0),
-        "s b",
+        "s b hl",
         "motor acceleration, share of the limit that applies",
     );
     // Labels that would stand on each other are left to the one above.
@@ -275,7 +280,7 @@ fn mark(svg: &mut Svg, upper: Frame, lower: Frame, path: &LegPath, marks: &[Mark
     for mark in marks {
         let x = lower.x + lower.width * (mark.at / path.length).clamp(0.0, 1.0);
         let ink = if mark.error { ERROR } else { WARNING };
-        svg.line((x, upper.y), (x, lower.bottom() + 22.0), ink, 1.2, "1 2");
+        svg.line((x, upper.y), (x, lower.bottom() + 4.0), ink, 1.2, "1 2");
         let tip = lower.bottom() + 20.0;
         let d = format!("M{} {}l5 9h-10z", number(x), number(tip));
         svg.shape(&d, ink);

@@ -1,6 +1,6 @@
 //! The picture of one cue: the figure as it holds, what is known of it, and the way into it.
 
-use super::chart::{Mark, charts};
+use super::chart::{self, Mark, charts};
 use super::facts::{Subject, class_of, clock_span, lobe_angle, of_cue, transition_words};
 use super::still::Scenery;
 use super::svg::{ERROR, FAINT, Frame, HAIR, ROTOR_A, ROTOR_B, Svg, TEXT, fitted, number, wrapped};
@@ -283,7 +283,10 @@ fn transition(
         width: whole,
         height: 360.0,
     };
-    let axis = (frame.x + 62.0, frame.width - 62.0 - 84.0);
+    let axis = (
+        frame.x + chart::LEFT,
+        frame.width - chart::LEFT - chart::RIGHT,
+    );
     let mut x = EDGE;
     for moment in scenery.moments(STILLS) {
         let still = scenery.still(&show.optics, moment, style.grain());

@@ -17,7 +17,11 @@ use sha2::{Digest, Sha256};
 use std::fmt::Write;
 
 const MARKUP: &str = include_str!("page/page.html");
-const STYLE: &str = include_str!("page/page.css");
+const STYLE: &str = concat!(
+    include_str!("page/page.css"),
+    include_str!("page/course.css"),
+    include_str!("page/lists.css")
+);
 /// Plain scripts that share one scope, each using only those before it when it is read.
 const SCRIPTS: [&str; 10] = [
     include_str!("page/words.js"),

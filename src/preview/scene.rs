@@ -14,6 +14,7 @@
 //!
 //! The spot is `optics::Optics::spot` of both phases: `optics.trace` holds all that the exact trace needs.
 
+use super::facts::transition_words;
 use super::moments::legs_of;
 use super::numeral::{Figure, Precise};
 use crate::exact::{Rational, Ticks, to_f64};
@@ -21,7 +22,7 @@ use crate::finding::{Finding, Locator, Sources};
 use crate::optics::path::{LawPath, Laws, LegPath, RotorPath};
 use crate::optics::trace::{Trace, Vec3};
 use crate::optics::{Optics, colour};
-use crate::plan::{LegKind, Plan};
+use crate::plan::{Leg, LegKind, Plan};
 use crate::rig::{Pair, Projection, RotorId, Turning};
 use crate::setpoint::{program, table_id};
 use serde::Serialize;
@@ -193,6 +194,8 @@ pub struct CueScene {
     pub lobes: u32,
     /// How often it repeats.
     pub repeat_hz: Figure,
+    /// How it is come into: `5 s quintic, dark`.
+    pub way: Option<String>,
     /// Start of its transition.
     pub start_s: Precise,
     /// Start of its hold.
@@ -436,11 +439,11 @@ fn number_of(law: Option<LawScene>, laws: &mut Vec<LawScene>) -> Option<usize> {
 
 fn cues(plan: &Plan, shown: usize, locator: &Locator) -> Vec<CueScene> {
     let time = |ticks: Ticks| Precise(ticks.time(plan.tick()).to_f64());
-    let mut before: Option<Ticks> = None;
+    let mut before: Option<&Leg> = None;
     let mut cues = Vec::new();
     for leg in plan.legs.iter().take(shown) {
         if leg.kind != LegKind::Hold {
-            before = Some(leg.start);
+            before = Some(leg);
             continue;
         }
         let (Some(cue), Some(speeds)) = (plan.cue(leg), plan.speeds_of(leg)) else {
@@ -455,7 +458,8 @@ fn cues(plan: &Plan, shown: usize, locator: &Locator) -> Vec<CueScene> {
             ratio: [ratio.p(), ratio.q()],
             lobes: ratio.lobes(),
             repeat_hz: Figure(speeds.repeat.to_f64()),
-            start_s: time(before.take().unwrap_or(leg.start)),
+            way: before.and_then(|way| transition_words(plan, way)),
+            start_s: time(before.take().unwrap_or(leg).start),
             hold_start_s: time(leg.start),
             end_s: time(Ticks(leg.start.0 + leg.ticks.0)),
             spin_deg_s: Figure(cue.spin.to_f64() * 360.0),

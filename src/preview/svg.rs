@@ -34,6 +34,7 @@ const STYLE: &str = "text{font-family:'Noto Sans',sans-serif;font-size:13px;fill
 .b{font-weight:bold}.f{fill:#666d78}.s{font-size:11px}.xs{font-size:10px}.l{font-size:16px;font-weight:bold}\
 .xl{font-size:26px;font-weight:bold}.m{text-anchor:middle}.e{text-anchor:end}\
 .err{fill:#b3221c}.warn{fill:#8a6200}.onw{fill:#aab3c2}.ra{fill:#1c5d99}.rb{fill:#b4530a}\
+.hl{paint-order:stroke;stroke:#f6f4ee;stroke-width:5px;stroke-linejoin:round}\
 .lt path,.lt use{fill:none;stroke-linecap:round;stroke-linejoin:round}";
 
 /// A drawing.

@@ -122,7 +122,31 @@ pub fn light(svg: &mut Svg, centre: (f64, f64), style: Style, pieces: &[Piece], 
         ));
         brighter(svg, style, pieces);
     }
+    if let Some(at) = resting(pieces, width / (style.scale * UNITS)) {
+        ring(svg, at, style, width);
+    }
     svg.raw("</g>");
+}
+
+/// Where the light stands still: all of it within three widths of the line.
+fn resting(pieces: &[Piece], width: f64) -> Option<Point> {
+    let first = pieces.first()?.curve.p0;
+    let near = |point: Point| (point - first).hypot() < 3.0 * width;
+    pieces
+        .iter()
+        .all(|piece| near(piece.curve.p1) && near(piece.curve.p3))
+        .then_some(first)
+}
+
+/// A ring around a spot at rest, which would be too small to be found.
+fn ring(svg: &mut Svg, at: Point, style: Style, width: f64) {
+    svg.raw(format_args!(
+        "<circle cx=\"{}\" cy=\"{}\" r=\"{}\" fill=\"none\" stroke-width=\"{}\"/>",
+        number(at.x * style.scale * UNITS),
+        number(-at.y * style.scale * UNITS),
+        number(4.0 * width),
+        number(width)
+    ));
 }
 
 fn brighter(svg: &mut Svg, style: Style, pieces: &[Piece]) {

@@ -1,6 +1,6 @@
 // Opens pages in Chromium and looks at what they do: node browser.mjs CHROMIUM FOLDER
 //
-// Every check gets a page of its own. Nothing waits for a fixed time where it can wait for something to be so; what must not
+// Every check gets a page of its own, and may give back what it measured. Nothing waits for a fixed time where it can wait for something to be so; what must not
 // happen is awaited for some frames.
 
 import { chromium } from "playwright-core";
@@ -99,9 +99,9 @@ for (const { name, page: file, options = {}, check } of [...time, ...light, ...l
   const began = Date.now();
   try {
     await shown.open(file);
-    await check(shown, { same, near, holds });
+    const measured = await check(shown, { same, near, holds });
     same(shown.troubles.join("\n"), "", "console, errors, dialogs, requests");
-    console.log(`passed: ${name}, ${Date.now() - began} ms`);
+    console.log(`passed: ${name}, ${Date.now() - began} ms${measured ? `, ${measured}` : ""}`);
   } catch (error) {
     failed += 1;
     console.log(`FAILED: ${name}: ${error.stack}`);

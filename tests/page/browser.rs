@@ -75,5 +75,6 @@ fn the_page_in_chromium() {
         std::fs::write(folder.path().join(format!("{name}.html")), page).unwrap();
     }
     let said = node("browser.mjs", &[Path::new(&chromium), folder.path()]);
+    eprintln!("{said}");
     assert!(said.contains("all checks passed"), "{said}");
 }

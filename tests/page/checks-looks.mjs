@@ -20,8 +20,9 @@ function reads(scheme, page) {
     options: { colorScheme: scheme },
     async check(shown, { same }) {
       same((await violations(shown)).join("\n"), "", "standing");
+      if (page === "many") return;
       await shown.page.click("#play");
-      if ((await shown.page.locator("#marks button").count()) > 0) await shown.page.locator("#marks button").first().hover();
+      await shown.page.locator("#marks button").first().hover();
       same((await violations(shown)).join("\n"), "", "playing");
     },
   };

@@ -69,6 +69,7 @@ export const time = [
       await shown.scrub(20.2);
       same(await shown.text("cue"), "3 2:-3", "cue");
       same(await shown.text("doing"), "changes into it, 50 %", "what happens");
+      same(await shown.text("way"), "4 s quintic, dark", "the way into it");
       same(await shown.text("beam"), "off: the grey line is where it would be", "beam");
       same(await shown.page.locator("#cues tr[aria-current=true] th").textContent(), "3", "marked row");
       await shown.scrub(15);

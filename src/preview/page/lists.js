@@ -72,14 +72,13 @@ class CueTable {
     button.addEventListener("click", () => this.go(cue.hold_start_s));
     const number = element("th", undefined, { scope: "row" });
     number.append(button);
-    const morph = cue.hold_start_s - cue.start_s;
     row.append(number);
     for (const words of [
       cue.name ?? "",
       cue.figure,
       ratioText(cue),
       clock(cue.start_s),
-      morph > 0 ? duration(morph) : "none",
+      cue.way ?? "none",
       duration(cue.end_s - cue.hold_start_s),
       `${plain(cue.repeat_hz, 2)} Hz`,
     ]) {

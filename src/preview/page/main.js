@@ -7,7 +7,7 @@ function find(id) {
 function open() {
   const scene = JSON.parse(find("scene").textContent);
   const told = Object.fromEntries(
-    ["table-time", "show-time", "cue", "doing", "figure", "ratio", "motor-a", "motor-b", "beam"].map((id) => [id, find(id)]),
+    ["table-time", "show-time", "cue", "doing", "figure", "ratio", "way", "motor-a", "motor-b", "beam"].map((id) => [id, find(id)]),
   );
   const page = {
     wall: find("wall"), strip: find("strip"), course: find("course"), slider: find("slider"), needle: find("needle"),

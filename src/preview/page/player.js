@@ -19,6 +19,8 @@ class Player {
     this.calm = window.matchMedia("(prefers-reduced-motion: reduce)");
     this.numbersAt = this.spokenAt = this.calmAt = -Infinity;
     this.spoken = null;
+    // Whether this round came out of the one before.
+    this.wrapped = false;
     this.stale = true;
     this.table = new CueTable(page.table, scene, (time) => this.go(time));
     this.frame = this.frame.bind(this);
@@ -36,8 +38,9 @@ class Player {
     const now = stamp / 1000;
     const passed = Math.min(Math.max(now - (this.last ?? now), 0), LONGEST_FRAME);
     this.last = now;
+    // After a jump while it plays too: the wall must not go dark and light up again.
+    if (this.stale) this.stand();
     if (this.playing) this.play(passed * this.rate, now);
-    else if (this.stale) this.stand();
     requestAnimationFrame(this.frame);
   }
 
@@ -51,6 +54,7 @@ class Player {
       if (!this.calm.matches) this.eye.pass(from, end);
       from = start;
       to = start + (to - end);
+      this.wrapped = true;
     }
     if (!this.calm.matches && to > from) this.eye.pass(from, to);
     this.time = to;
@@ -69,7 +73,7 @@ class Player {
     } else {
       this.eye.show();
     }
-    this.strip.draw(this.time, this.loops);
+    this.strip.draw(this.time, this.loops, this.wrapped);
     this.page.slider.value = String(this.time);
     this.needle();
     if (now - this.numbersAt < NUMBERS_EVERY) return;
@@ -82,7 +86,7 @@ class Player {
   stand() {
     this.stale = false;
     this.eye.still(this.time);
-    this.strip.draw(this.time, this.loops);
+    this.strip.draw(this.time, this.loops, this.wrapped);
     this.page.slider.value = String(this.time);
     this.needle();
     this.told();
@@ -110,8 +114,8 @@ class Player {
   // Goes to a moment of table time, playing on if it plays.
   go(time) {
     this.time = Math.min(Math.max(time, 0), this.scene.run_s);
-    this.eye.clear();
     this.stale = true;
+    this.wrapped = false;
     this.numbersAt = this.calmAt = -Infinity;
     if (!this.playing) this.told();
   }
@@ -167,6 +171,7 @@ class Player {
     set("cue", cue ? `${leg.kind === "loop" ? leg.cue : cue.cue} ${cueTitle(cue)}` : "none");
     set("doing", doing);
     set("figure", cue?.figure ?? "none");
+    set("way", cue?.way ?? "none");
     set("ratio", cue ? ratioText(cue) : "none");
     for (const name of ["a", "b"]) {
       set(`motor-${name}`, `${rpm(motors[name].speed)}, ${plain(motors[name].use * 100, 0)} % acc.`);

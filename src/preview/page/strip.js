@@ -24,26 +24,28 @@ class Strip extends Graph {
     });
   }
 
-  // From moments of the page's clock to moments of the table: what comes after a loop's end is its start again.
-  tableTime(time, loops) {
+  // From moments of the page's clock to moments of the table: what comes after a loop's end is its start again, and before
+  // the start of a later round was the end of the one before.
+  tableTime(time, loops, wrapped) {
     const { run_s: end, loop_start_s: start } = this.scene;
+    if (wrapped && time < start) return Math.max(end - (start - time), start);
     if (time <= end || !loops) return time;
     return start + ((time - end) % (end - start));
   }
 
-  draw(now, loops) {
+  draw(now, loops, wrapped) {
     this.wipe();
     const left = 58;
     const right = this.width - 10;
     const toX = (time) => left + ((time - now + BEFORE) / (BEFORE + AFTER)) * (right - left);
     const xs = [];
     const samples = [];
-    const first = Math.max(now - BEFORE, 0);
+    const first = wrapped ? now - BEFORE : Math.max(now - BEFORE, 0);
     const last = loops ? now + AFTER : Math.min(now + AFTER, this.scene.run_s);
     const count = Math.max(Math.round((toX(last) - toX(first)) / 2), 1);
     for (let at = 0; at <= count; at += 1) {
       const time = first + ((last - first) * at) / count;
-      const inTable = this.tableTime(time, loops);
+      const inTable = this.tableTime(time, loops, wrapped);
       xs.push(toX(time));
       samples.push({ ...this.motion.motorsAt(inTable), beam: this.beamAt(inTable), time });
     }
