@@ -61,3 +61,21 @@ fn phases_speeds_and_spots_are_those_of_the_program() {
     );
     assert!(count > 1000, "{count}");
 }
+
+/// The eye of the page under node, with nothing to draw on: light is neither lost nor made, whatever the rate of frames.
+#[test]
+fn light_is_kept_at_every_rate_of_frames() {
+    if !runs("node") {
+        missing("node", "the page's eye was not run");
+        return;
+    }
+    let folder = tempfile::tempdir().unwrap();
+    let made = made(
+        &example("quillmere-evening.show"),
+        &example("mill-tower.rig"),
+    );
+    let file = folder.path().join("scene.json");
+    std::fs::write(&file, made.scene.json().unwrap()).unwrap();
+    let said = node("light.mjs", &[&file]);
+    assert!(said.contains("light is kept"), "{said}");
+}
