@@ -60,7 +60,7 @@ for (const [what, from] of [
   for (const [one, two] of [[slow, usual], [fast, usual]]) {
     // Spots lie elsewhere on the same line, half a radius apart: their sum ripples by little.
     const off = difference(one, two);
-    if (!(off < 0.02)) throw new Error(`${what}: pictures differ by ${off} of their light`);
+    if (!(off < 0.01)) throw new Error(`${what}: pictures differ by ${off} of their light`);
   }
 }
 

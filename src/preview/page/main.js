@@ -20,11 +20,8 @@ function open() {
   listenToLoop(find("loops"), find("ending"), player);
   listenToTime(page, player);
   listenToKeys(player, page.slider);
-  const go = (time) => {
-    player.go(time);
-    page.wall.scrollIntoView({ block: "nearest" });
-  };
-  listFindings(find("findings"), scene, player.course, go);
+  const go = (time) => player.go(time);
+  listFindings(find("findings"), scene, player.course, (time) => player.lookAt(time));
   const tell = (words) => {
     find("mark-words").textContent = words;
   };

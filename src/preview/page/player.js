@@ -22,7 +22,7 @@ class Player {
     // Whether this round came out of the one before.
     this.wrapped = false;
     this.stale = true;
-    this.table = new CueTable(page.table, scene, (time) => this.go(time));
+    this.table = new CueTable(page.table, scene, (time) => this.lookAt(time));
     this.frame = this.frame.bind(this);
     this.time = scene.show_start_s;
   }
@@ -118,6 +118,12 @@ class Player {
     this.wrapped = false;
     this.numbersAt = this.calmAt = -Infinity;
     if (!this.playing) this.told();
+  }
+
+  // Goes to a moment from a place on the page that may be far from the wall.
+  lookAt(time) {
+    this.go(time);
+    this.page.wall.scrollIntoView({ block: "nearest" });
   }
 
   // The place in the list of cues that a cue before or after this moment has.
