@@ -126,7 +126,7 @@ class Player {
     this.page.wall.scrollIntoView({ block: "nearest" });
   }
 
-  // The place in the list of cues that a cue before or after this moment has.
+  // Goes to the next cue, or back to the start of this one or to the one before.
   neighbour(direction) {
     const { cues } = this.scene;
     const at = this.cuePlace();
