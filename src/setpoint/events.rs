@@ -24,15 +24,24 @@ impl Event {
     }
 }
 
-/// Every stretch of a plan's table, in order, without gaps; the last ends with the table.
+/// Every stretch of a plan's table, in order, without gaps; cut where the loop starts, the last ends with the table.
 pub(super) fn events(plan: &Plan) -> impl Iterator<Item = Event> {
     let beam = Beam::new(plan);
     let end = plan.rows();
+    let loop_start = plan.loop_start().map(|start| start.0);
     let mut tick = 0;
     std::iter::from_fn(move || {
         (tick < end).then(|| {
-            let event = at(plan, &beam, tick);
-            tick += event.ticks;
+            let mut event = at(plan, &beam, tick);
+            while event.end() < end && loop_start != Some(event.end()) {
+                let next = at(plan, &beam, event.end());
+                let alike = (next.cue, next.beam) == (event.cue, event.beam);
+                if !alike || event.ticks + next.ticks > MOST_TICKS {
+                    break;
+                }
+                event.ticks += next.ticks;
+            }
+            tick = event.end();
             event
         })
     })

@@ -7,8 +7,12 @@
 )]
 
 mod audit;
+#[path = "../common/mod.rs"]
+mod common;
 mod hostile;
 mod knots;
 mod least;
 mod load;
 mod rows;
+mod storage;
+mod sweep;

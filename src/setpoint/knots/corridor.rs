@@ -9,19 +9,18 @@ use super::{FRACTION_BITS, Tolerance};
 /// Rows of a move held at a time; a longer move is searched stretch by stretch.
 pub(super) const MOST_ROWS: u64 = 1 << 16;
 
-/// Rows beyond a stretch that must be known, so that the next one can go on from it.
-pub(super) const AHEAD: u64 = 2;
-
 /// Counts that rows may bend away from a straight line within one piece; keeps every product within 64 bits.
 const MOST_BEND: i64 = 1 << 29;
 
 /// The rows of one rotor over a stretch of a move.
 #[derive(Clone, Debug)]
 pub(super) struct Corridor {
-    /// Unwrapped counts from the first row of the stretch on.
+    /// Unwrapped counts from the first row of the stretch on, and of the row after its last.
     rows: Vec<i64>,
-    /// N.
+    /// N, but never more than a quarter of a turn.
     tolerance: i64,
+    /// Counts of a turn.
+    counts: u32,
 }
 
 /// Phase and speed at a tick, in 2⁻³² counts, the phase less the row of that tick.
@@ -60,11 +59,19 @@ pub(super) fn triangle(k: usize) -> i64 {
 }
 
 impl Corridor {
-    pub(super) fn new(rows: Vec<i64>, tolerance: Tolerance) -> Self {
+    pub(super) fn new(rows: Vec<i64>, tolerance: Tolerance, counts: u32) -> Self {
+        let quarter = counts.saturating_sub(1) / 4;
         Self {
             rows,
-            tolerance: i64::from(tolerance.max(1)),
+            tolerance: i64::from(tolerance.max(1).min(quarter)),
+            counts,
         }
+    }
+
+    /// Whether a phase this far from its row finds the nearest way to it: less than half a turn.
+    pub(super) fn finds_its_row(&self, off: i64) -> bool {
+        let half = 1_i128 << (FRACTION_BITS - 1);
+        (i128::from(off) - half).abs() < i128::from(self.counts) * half
     }
 
     pub(super) fn len(&self) -> usize {

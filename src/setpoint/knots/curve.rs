@@ -1,8 +1,9 @@
 //! The rows of a curved move, stretch by stretch, for the search.
 
-use super::corridor::{AHEAD, Corridor, MOST_ROWS, Place};
+use super::corridor::{Corridor, MOST_ROWS, Place};
 use super::hold::Hold;
-use super::search::{Effort, Search, Start, Steps, fresh};
+use super::search::{Search, Start};
+use super::steps::{Effort, Steps, fresh};
 use super::{FRACTION_BITS, Piece, Tolerance};
 use crate::plan::Leg;
 use crate::rig::{Pair, RotorId};
@@ -25,12 +26,13 @@ pub(super) fn search(
     let mut first = 0;
     while first < leg.ticks.0 {
         let length = (leg.ticks.0 - first).min(MOST_ROWS);
-        let until = (first + length + AHEAD).min(leg.ticks.0);
-        let stretch = Stretch::read(rows, leg.start.0 + first..leg.start.0 + until);
+        let from = leg.start.0 + first;
+        let stretch = Stretch::read(rows, from..from + length);
         let last = first + length == leg.ticks.0;
         for id in RotorId::BOTH {
             if *wanted.of(id) {
-                let corridor = Corridor::new(stretch.unwrapped.of(id).clone(), tolerance);
+                let corridor =
+                    Corridor::new(stretch.unwrapped.of(id).clone(), tolerance, *counts.of(id));
                 let found =
                     ways.of_mut(id)
                         .go(&corridor, *stretch.first.of(id), effort, (length, last));
@@ -46,7 +48,7 @@ pub(super) fn search(
 struct Stretch {
     /// Counts of the first row.
     first: Pair<u32>,
-    /// Unwrapped counts of every row, less the first.
+    /// Unwrapped counts of every row, less the first, and of where the last step leads.
     unwrapped: Pair<Vec<i64>>,
 }
 
@@ -64,6 +66,9 @@ impl Stretch {
                 *sums.of_mut(id) = sums.of(id).saturating_add(rotor.step);
             }
         });
+        for id in RotorId::BOTH {
+            stretch.unwrapped.of_mut(id).push(*sums.of(id));
+        }
         stretch
     }
 }
@@ -94,7 +99,8 @@ impl Way {
         (length, last): (u64, bool),
     ) -> Vec<Piece> {
         let start = self.start.unwrap_or_else(|| self.first(corridor, row));
-        let steps = *self.steps.get_or_insert_with(|| Steps::of(corridor));
+        let steps = Steps::of(corridor).after(self.steps);
+        self.steps = Some(steps);
         let length = usize::try_from(length).unwrap_or(usize::MAX);
         let (pieces, leads) =
             Search::new(corridor, steps, effort, length, last).run(start, i64::from(row));

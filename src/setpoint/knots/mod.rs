@@ -23,6 +23,7 @@ mod curve;
 mod hold;
 mod json;
 mod search;
+mod steps;
 
 pub use json::write_json_knots;
 
@@ -34,7 +35,7 @@ use crate::rig::{Pair, RotorId};
 use hold::{Hold, straight};
 use num_traits::Zero;
 use rayon::prelude::{IntoParallelIterator, ParallelIterator};
-use search::Effort;
+use steps::Effort;
 
 /// Counts by which a tick of the knots table may differ from the row table; at least 1.
 pub type Tolerance = u32;

@@ -7,72 +7,16 @@
 //! ticks of long pieces.
 
 use super::corridor::{Changes, Corridor, Place, triangle};
+use super::steps::{Effort, Steps, fresh};
 use super::{Entry, FRACTION_BITS, Piece};
 use crate::setpoint::pack::{signed_bytes, unsigned_bytes};
 
-/// Steps of the scale that a typical interval of changes holds.
-const STEPS: i64 = 64;
 /// Ticks that the first look ahead looks at.
 const COARSE: usize = 40;
 /// So many times the width are looked at more closely.
 const CLOSER: usize = 6;
 /// A byte counts as much as this share of a typical piece, in hundredths.
 const BYTE_WORTH: i64 = 1;
-
-/// How much is tried for each piece.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub(super) struct Effort {
-    /// States kept from one piece to the next.
-    width: usize,
-    /// Lengths tried.
-    lengths: usize,
-    /// Changes tried for each length.
-    changes: i64,
-    /// Offsets tried for each shift.
-    shifts: i64,
-    /// Ticks that a look ahead looks at.
-    looks: usize,
-}
-
-impl Effort {
-    /// The effort for a show of so many legs: a show of a million cues shall not take a day.
-    pub(super) fn of(legs: usize) -> Self {
-        match legs {
-            ..1000 => Self {
-                width: 10,
-                lengths: 8,
-                changes: 5,
-                shifts: 7,
-                looks: 200,
-            },
-            1000..10_000 => Self {
-                width: 4,
-                lengths: 5,
-                changes: 4,
-                shifts: 7,
-                looks: 32,
-            },
-            _ => Self {
-                width: 1,
-                lengths: 4,
-                changes: 3,
-                shifts: 5,
-                looks: 16,
-            },
-        }
-    }
-}
-
-/// How finely the changes and shifts of a move are stepped.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub(super) struct Steps {
-    pub(super) scale: u8,
-    pub(super) grain: u8,
-    /// Ticks are whole multiples of 2^pace, those of the first piece aside.
-    pub(super) pace: u8,
-    /// Ticks of a typical piece.
-    typical: usize,
-}
 
 /// Where a stretch is entered, and with what change before it.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -94,78 +38,14 @@ struct Node {
     ticks: usize,
     /// Units of the shift that the next piece starts with.
     shift: i64,
+    /// Whether the next piece sets phase and speed anew.
+    set: bool,
     /// Bytes so far, the shift's included.
     bytes: i64,
     /// Tick up to which one more piece gets, as far as the look ahead sees.
     reach: usize,
     /// The node before, in the arena.
     from: usize,
-}
-
-impl Steps {
-    /// The steps that suit this stretch: from how far single pieces get in it.
-    pub(super) fn of(corridor: &Corridor) -> Self {
-        let mut lengths = Vec::new();
-        let mut tick = 0;
-        while tick + 2 < corridor.len() {
-            let (_, reach) = fresh(corridor, tick);
-            lengths.push(reach);
-            tick += reach.max(2);
-        }
-        lengths.sort_unstable();
-        let typical = lengths.get(lengths.len() / 2).copied().unwrap_or(2).max(2);
-        let (least, most) = corridor.span();
-        let interval = (most - least) / triangle(typical) / STEPS;
-        let shift = (most - least) / 24;
-        Self {
-            scale: (interval.max(1).ilog2() as u8).min(30),
-            grain: shift.max(1).ilog2() as u8,
-            pace: (typical * 4 / 3 / 127 + 1)
-                .next_power_of_two()
-                .ilog2()
-                .min(12) as u8,
-            typical,
-        }
-    }
-}
-
-/// A place at a tick from which a long piece leads on, with a speed of its own, and how far.
-pub(super) fn fresh(corridor: &Corridor, tick: usize) -> (Place, usize) {
-    let half = 1_i64 << (FRACTION_BITS - 1);
-    let mut best = Place {
-        tick,
-        off: half,
-        speed: (corridor.row(tick + 1) - corridor.row(tick)) << FRACTION_BITS,
-    };
-    let mut farthest = corridor.reach(best, 1);
-    let mut ticks = 2;
-    while tick + ticks < corridor.len() {
-        let place = through(corridor, best, ticks);
-        let reach = corridor.reach(place, 1);
-        if reach > farthest {
-            (best, farthest) = (place, reach);
-        }
-        if reach * 2 < ticks {
-            break;
-        }
-        ticks += (ticks / 4).max(1);
-    }
-    (best, farthest)
-}
-
-/// The place with the speed of the piece through the rows now, in the middle of and after `ticks`.
-fn through(corridor: &Corridor, place: Place, ticks: usize) -> Place {
-    let [first, mid, last] =
-        [0, ticks / 2, ticks].map(|k| i128::from(corridor.row(place.tick + k)));
-    let (n, m) = (ticks as i128, (ticks / 2) as i128);
-    // r(n) − r(0) = n·s + n(n+1)/2·c, and the same for m.
-    let bend = ((last - first) * m - (mid - first) * n) << FRACTION_BITS;
-    let change = 2 * bend / (n * m * (n - m));
-    let speed = ((last - first) << FRACTION_BITS) / n - change * (n + 1) / 2;
-    Place {
-        speed: i64::try_from(speed).unwrap_or(place.speed),
-        ..place
-    }
 }
 
 /// One stretch of one rotor's move.
@@ -181,6 +61,13 @@ pub(super) struct Search<'c> {
 }
 
 const ROOT: usize = usize::MAX;
+
+impl Node {
+    /// The change from which that of the next piece is counted.
+    fn base(&self) -> i64 {
+        if self.set { 0 } else { self.change }
+    }
+}
 
 impl<'c> Search<'c> {
     pub(super) fn new(
@@ -207,6 +94,7 @@ impl<'c> Search<'c> {
             change: start.change,
             ticks: 0,
             shift: 0,
+            set: start.set,
             bytes: 0,
             reach: 0,
             from: ROOT,
@@ -221,13 +109,49 @@ impl<'c> Search<'c> {
                 self.expand(*node, first + index, &mut candidates, &mut finished);
             }
             if let Some(node) = finished {
-                return self.unwind(node, start, row);
+                return self.unwind(node, row);
             }
-            frontier = self.best(candidates);
-            if frontier.is_empty() {
-                // Cannot be: a piece of one tick always fits. Kept as an answer that the audit would refuse.
-                return (Vec::new(), start);
+            let next = self.best(candidates);
+            frontier = match frontier.into_iter().max_by_key(|node| node.place.tick) {
+                Some(stuck) if next.is_empty() => vec![self.anew(stuck)],
+                _ => next,
+            };
+            // Led on tick by tick, up to the end.
+            if let Some(node) = frontier.iter().find(|node| node.place.tick == self.end) {
+                return self.unwind(*node, row);
             }
+        }
+    }
+
+    /// A way on where no change fits: phase and speed anew, and where even these lead nowhere, one tick to the next row.
+    fn anew(&mut self, node: Node) -> Node {
+        let tick = node.place.tick;
+        if !node.set {
+            return Node {
+                place: fresh(self.corridor, tick).0,
+                shift: 0,
+                set: true,
+                ..node
+            };
+        }
+        let exact = Node {
+            place: Place {
+                tick,
+                off: 1 << (FRACTION_BITS - 1),
+                speed: (self.corridor.row(tick + 1) - self.corridor.row(tick)) << FRACTION_BITS,
+            },
+            ..node
+        };
+        self.arena.push(exact);
+        Node {
+            place: self.corridor.after(exact.place, 0, 1),
+            change: 0,
+            ticks: 1,
+            shift: 0,
+            set: false,
+            bytes: node.bytes,
+            reach: tick + 1,
+            from: self.arena.len() - 1,
         }
     }
 
@@ -245,10 +169,7 @@ impl<'c> Search<'c> {
             true
         });
         let rest = self.end - node.place.tick;
-        let needed = if self.last { rest - 1 } else { rest };
-        if let Some(changes) = found.get(needed.min(self.corridor.len() - 1 - node.place.tick)) {
-            self.finish(node, from, rest, *changes, finished);
-        }
+        self.finish(node, from, &found, finished);
         if finished.is_some() {
             return;
         }
@@ -264,9 +185,7 @@ impl<'c> Search<'c> {
             };
             self.of_length(node, from, ticks, &found, candidates);
         }
-        let mut ticks = reach
-            .saturating_sub(self.effort.lengths * pace)
-            .min(rest - 1);
+        let mut ticks = reach.min(rest - 1);
         while candidates.len() == before && ticks > 0 {
             self.of_length(node, from, ticks, &found, candidates);
             ticks -= 1;
@@ -286,24 +205,31 @@ impl<'c> Search<'c> {
         (ticks > 0).then_some(ticks)
     }
 
-    fn finish(
-        &self,
-        node: Node,
-        from: usize,
-        ticks: usize,
-        changes: Changes,
-        finished: &mut Option<Node>,
-    ) {
-        let Some((least, most)) = self.stepped(node.change, changes) else {
+    /// The piece that covers the rest of the stretch, where one does.
+    fn finish(&self, node: Node, from: usize, found: &[Changes], finished: &mut Option<Node>) {
+        let ticks = self.end - node.place.tick;
+        let steps = |k: usize| self.stepped(node.base(), *found.get(k)?);
+        let mut step = steps(ticks).map(|(least, most)| 0.clamp(least, most));
+        if step.is_none() && self.last {
+            // What comes after sets its own phase, so the last tick's own is enough, as long as the way there is not longer
+            // than half a turn.
+            let wanted = self.towards(node, ticks);
+            step = steps(ticks - 1).map(|(least, most)| wanted.clamp(least, most));
+        }
+        let Some(step) = step else {
             return;
         };
-        let step = 0.clamp(least, most);
-        let change = node.change + (step << self.steps.scale);
+        let change = node.base() + (step << self.steps.scale);
+        let place = self.corridor.after(node.place, change, ticks);
+        if !self.corridor.finds_its_row(place.off) {
+            return;
+        }
         let end = Node {
-            place: self.corridor.after(node.place, change, ticks),
+            place,
             change,
             ticks,
             shift: 0,
+            set: false,
             bytes: node.bytes + self.piece_bytes(ticks, step),
             reach: 0,
             from,
@@ -311,6 +237,13 @@ impl<'c> Search<'c> {
         if finished.is_none_or(|best| end.bytes < best.bytes) {
             *finished = Some(end);
         }
+    }
+
+    /// The step of the scale that leads nearest to the row `ticks` on.
+    fn towards(&self, node: Node, ticks: usize) -> i64 {
+        let straight = self.corridor.after(node.place, node.base(), ticks);
+        let missing = (1_i64 << (FRACTION_BITS - 1)).saturating_sub(straight.off);
+        (missing / triangle(ticks)) >> self.steps.scale
     }
 
     /// The steps of the scale, from the change before, that lead into an interval.
@@ -340,12 +273,12 @@ impl<'c> Search<'c> {
         } else {
             with
         };
-        if let Some((least, most)) = self.stepped(node.change, with) {
+        if let Some((least, most)) = self.stepped(node.base(), with) {
             for step in spread(least, most, self.effort.changes) {
                 self.arrive(node, from, ticks, step, without, candidates);
             }
         }
-        if let Some((least, most)) = without.and_then(|changes| self.stepped(node.change, changes))
+        if let Some((least, most)) = without.and_then(|changes| self.stepped(node.base(), changes))
         {
             for step in spread(least, most, self.effort.changes) {
                 self.arrive(node, from, ticks, step, without, candidates);
@@ -363,7 +296,7 @@ impl<'c> Search<'c> {
         without: Option<Changes>,
         candidates: &mut Vec<Node>,
     ) {
-        let change = node.change + (step << self.steps.scale);
+        let change = node.base() + (step << self.steps.scale);
         let place = self.corridor.after(node.place, change, ticks);
         let bytes = node.bytes + self.piece_bytes(ticks, step);
         let stride = (self.steps.typical / COARSE).max(1);
@@ -372,6 +305,7 @@ impl<'c> Search<'c> {
             change,
             ticks,
             shift,
+            set: false,
             bytes,
             reach: place.tick + self.corridor.reach(place, stride),
             from,
@@ -438,11 +372,18 @@ impl<'c> Search<'c> {
     }
 
     /// The pieces that lead to a node, from the first on.
-    fn unwind(&self, end: Node, start: Start, row: i64) -> (Vec<Piece>, Start) {
+    fn unwind(&self, end: Node, row: i64) -> (Vec<Piece>, Start) {
         let mut pieces = Vec::new();
         let mut node = end;
         while let Some(before) = self.arena.get(node.from) {
             let entry = match before.shift {
+                _ if before.set => {
+                    let counts = i128::from(row) + i128::from(self.corridor.row(before.place.tick));
+                    Entry::Sets {
+                        phase: (counts << FRACTION_BITS) + i128::from(before.place.off),
+                        speed: before.place.speed + node.change,
+                    }
+                }
                 0 => Entry::GoesOn,
                 units => Entry::Shifts { units },
             };
@@ -457,12 +398,6 @@ impl<'c> Search<'c> {
             node = *before;
         }
         pieces.reverse();
-        if let (true, Some(first)) = (start.set, pieces.first_mut()) {
-            first.entry = Entry::Sets {
-                phase: (i128::from(row) << FRACTION_BITS) + i128::from(start.place.off),
-                speed: start.place.speed + first.change,
-            };
-        }
         let leads = Start {
             place: Place {
                 tick: 0,

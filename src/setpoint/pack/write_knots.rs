@@ -92,7 +92,12 @@ impl<'b, 'w, E: Iterator<Item = Event>> Writer<'b, 'w, E> {
             a: leg.pieces.a.iter(),
             b: leg.pieces.b.iter(),
         };
-        let end = leg.start + leg.pieces.a.iter().map(|piece| piece.ticks).sum::<u64>();
+        let [a, b] = [&leg.pieces.a, &leg.pieces.b]
+            .map(|pieces| pieces.iter().map(|piece| piece.ticks).sum::<u64>());
+        if a != b {
+            return Err(io::Error::other("the pieces of a leg do not fill it"));
+        }
+        let end = leg.start + a;
         let mut tick = leg.start;
         while tick < end {
             self.run_to(tick);
