@@ -9,6 +9,8 @@ use std::io::{self, Write};
 
 /// The largest tolerance that a help line proposes, in counts: past it the pieces of a show hardly get fewer.
 const MOST_TOLERANCE: u32 = 1000;
+/// Up to here every tolerance is tried.
+const EACH: u32 = 64;
 
 /// The finding of a table whose pack form is larger than the rig's `storage`.
 ///
@@ -82,6 +84,9 @@ fn too_large(how: &str, size: u64, room: u64) -> String {
 }
 
 /// The smallest tolerance above `tolerance` whose knots fit.
+///
+/// Sizes fall with the tolerance, but not at every step: a search that takes fewer pieces within 30 counts may take one more
+/// within 31. So every tolerance is tried up to [`EACH`]; past it, where a count more or less is nothing, they are halved.
 fn help_within(plan: &Plan, room: u64, tolerance: u32) -> Option<String> {
     let fits = |tolerance: u32| size_up_to(plan, Content::Knots(tolerance), room);
     let (mut fails, mut tried) = (tolerance, tolerance.saturating_mul(2));
@@ -89,15 +94,21 @@ fn help_within(plan: &Plan, room: u64, tolerance: u32) -> Option<String> {
         let within = tried.min(MOST_TOLERANCE);
         match fits(within) {
             Some(size) => break (within, size),
-            None if within == MOST_TOLERANCE => return None,
+            None if within <= fails || within == MOST_TOLERANCE => return None,
             None => (fails, tried) = (within, within.saturating_mul(2)),
         }
     };
-    while fails + 1 < fitting.0 {
-        let within = fails.midpoint(fitting.0);
-        match fits(within) {
-            Some(size) => fitting = (within, size),
-            None => fails = within,
+    let each = (fails + 1..fitting.0.min(EACH)).find_map(|within| Some((within, fits(within)?)));
+    if let Some(found) = each {
+        fitting = found;
+    } else {
+        fails = fails.max(fitting.0.min(EACH).saturating_sub(1));
+        while fails + 1 < fitting.0 {
+            let within = fails.midpoint(fitting.0);
+            match fits(within) {
+                Some(size) => fitting = (within, size),
+                None => fails = within,
+            }
         }
     }
     let (within, size) = fitting;

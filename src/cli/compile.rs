@@ -12,14 +12,11 @@ use crate::plan::Plan;
 use crate::rig::TableKind;
 use crate::setpoint::c_header::identifier;
 use crate::setpoint::pack::Content;
-use crate::setpoint::{Form, Head, Output, table_id};
+use crate::setpoint::{Form, Head, MOST_ROWS, Output, table_id};
 use clap::{Args, ValueEnum};
 use std::ffi::OsString;
 use std::fs;
 use std::path::{Path, PathBuf};
-
-/// Rows of a table with one row a tick, at most.
-const MOST_ROWS: u64 = 100_000_000;
 
 /// Check a show and write its set-point table
 #[derive(Args, Debug)]

@@ -78,14 +78,14 @@ struct PeakValues {
     b_torque: Option<Number>,
 }
 
-/// What the table takes in each form; null where nobody would wait for it.
+/// What the table takes in each form; null where nobody would wait for it, or no such table is written.
 #[derive(Serialize)]
 struct Bytes {
-    csv: u64,
-    json: u64,
-    c: u64,
-    pack: u64,
-    json_knots: u64,
+    csv: Option<u64>,
+    json: Option<u64>,
+    c: Option<u64>,
+    pack: Option<u64>,
+    json_knots: Option<u64>,
     c_knots: u64,
     pack_knots: u64,
 }
@@ -95,11 +95,11 @@ impl From<Sizes> for Bytes {
         Self {
             csv: sizes.csv,
             json: sizes.json,
-            c: sizes.c,
-            pack: sizes.pack,
+            c: sizes.rows.map(|rows| rows.c),
+            pack: sizes.rows.map(|rows| rows.pack),
             json_knots: sizes.json_knots,
-            c_knots: sizes.c_knots,
-            pack_knots: sizes.pack_knots,
+            c_knots: sizes.knots.c,
+            pack_knots: sizes.knots.pack,
         }
     }
 }

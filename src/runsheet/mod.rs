@@ -15,10 +15,12 @@ use crate::exact::{Rational, Seconds, Ticks, Turns, ratio, round_half_up, whole}
 use crate::finding::{Finding, Locator};
 use crate::plan::{CueSpeeds, Leg, LegKind, Plan};
 use crate::rig::{Pair, Projection, RotorId};
+use crate::setpoint::c_header::identifier;
 use crate::setpoint::{Sizes, allowance, sizes, table_id};
-use crate::show::{Cue, Land, Transition};
+use crate::show::{Cue, Land, Transition, WrittenCue};
 use remarks::Remarks;
 use std::io::{self, Write};
+use std::path::Path;
 
 /// How a run sheet is written.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -51,13 +53,27 @@ pub fn write(
         remarks: Remarks::new(plan, findings),
         table_id: table_id(plan),
         // CSV has a line a cue, and no place for it.
-        sizes: if form == Form::Csv { None } else { sizes(plan) },
+        sizes: (form != Form::Csv).then(|| sizes(plan, &header_name(plan, locator))),
     };
     match form {
         Form::Text => text::write(&sheet, out),
         Form::Csv => csv::write(&sheet, out),
         Form::Json => json::write(&sheet, out),
         Form::Markdown => markdown::write(&sheet, out),
+    }
+}
+
+/// The identifier that `compile` gives a C header of this show.
+fn header_name(plan: &Plan, locator: &Locator<'_>) -> String {
+    let file = plan.show.cues.iter().find_map(|cue| match cue {
+        WrittenCue::Good(cue) => Some(cue.place.file),
+        _ => None,
+    });
+    let name = file.map_or("", |file| locator.name(file));
+    let stem = Path::new(name).file_stem().unwrap_or_default();
+    match stem.to_string_lossy().as_ref() {
+        "" | "-" => "show".to_owned(),
+        stem => identifier(stem),
     }
 }
 

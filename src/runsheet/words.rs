@@ -206,22 +206,36 @@ pub(super) fn sizes(sheet: &Sheet<'_>) -> Vec<String> {
         let room = grouped(storage.value);
         format!("; the controller has room for a pack of {room} B")
     });
-    vec![
-        format!(
-            "as rows: pack {} B, C header {} B, CSV {} B, JSON {} B and its findings",
-            grouped(sizes.pack),
-            grouped(sizes.c),
-            grouped(sizes.csv),
-            grouped(sizes.json)
-        ),
-        format!(
-            "as knots: pack {} B, C header {} B, JSON {} B and its findings{}",
-            grouped(sizes.pack_knots),
-            grouped(sizes.c_knots),
-            grouped(sizes.json_knots),
-            room.unwrap_or_default()
-        ),
-    ]
+    let part = |form: &str, bytes: Option<u64>, more: &str| {
+        bytes.map(|bytes| format!("{form} {} B{more}", grouped(bytes)))
+    };
+    let parts = |all: [Option<String>; 4]| {
+        let all: Vec<String> = all.into_iter().flatten().collect();
+        all.join(", ")
+    };
+    let rows = parts([
+        part("pack", sizes.rows.map(|rows| rows.pack), ""),
+        part("C header", sizes.rows.map(|rows| rows.c), ""),
+        part("CSV", sizes.csv, ""),
+        part("JSON", sizes.json, " and its findings"),
+    ]);
+    let knots = parts([
+        part("pack", Some(sizes.knots.pack), ""),
+        part("C header", Some(sizes.knots.c), ""),
+        part("JSON", sizes.json_knots, " and its findings"),
+        None,
+    ]);
+    let mut lines = Vec::new();
+    if sizes.rows.is_some() {
+        let uncounted = if sizes.csv.is_none() {
+            " (CSV and JSON are not counted in so long a table)"
+        } else {
+            ""
+        };
+        lines.push(format!("as rows: {rows}{uncounted}"));
+    }
+    lines.push(format!("as knots: {knots}{}", room.unwrap_or_default()));
+    lines
 }
 
 /// A number with a blank before each group of three digits.

@@ -28,7 +28,7 @@ pub use head::{Head, JSON_FORMAT, allowance, most_sensitive, program};
 pub use id::table_id;
 pub use output::Output;
 pub use rows::{RotorRow, Row, Rows};
-pub use sizes::{Sizes, sizes};
+pub use sizes::{Binary, MOST_ROWS, Sizes, sizes};
 pub use table::{BLOCK_ROWS, Form, write_table};
 
 /// The columns of a table, in order.

@@ -100,6 +100,23 @@ fn a_rig_without_marks_as_json() {
     assert_snapshot!(steady(&sheet));
 }
 
+/// Knots are counted for every show; the forms of text only where that takes no time worth speaking of.
+#[test]
+fn a_long_show_says_what_it_takes_as_knots() {
+    let show = SHOW.replace("hold 20 s", "hold 45 min");
+    let rig = RIG.replace("2 ms", "1 ms");
+    assert!(show != SHOW && rig != RIG);
+    let ran = Run::new(&["runsheet", "harbour.show", "--form", "json", "-q"])
+        .with("harbour.show", show)
+        .with("north-wall.rig", rig)
+        .run();
+    let sheet: serde_json::Value = serde_json::from_str(&ran.stdout).unwrap();
+    let bytes = &sheet["bytes"];
+    assert!(bytes["csv"].is_null() && bytes["json"].is_null(), "{bytes}");
+    assert!(bytes["pack_knots"].as_u64().unwrap() < 2_000, "{bytes}");
+    assert!(bytes["pack"].as_u64().unwrap() > 2_000_000, "{bytes}");
+}
+
 #[test]
 fn every_example_fits_on_paper() {
     for (show, rig) in [
