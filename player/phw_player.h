@@ -13,10 +13,19 @@
  * PHW_READ8(p)  reads one byte of a table in memory; define it beforehand on a chip that keeps constants apart from memory.
  * PHW_STORE     stands after the table's name in its definition; define it together with PHW_READ8.
  *
+ * Lasers blind and rotors break: the beam needs a shutter that does not depend on this program, and phw_stop is no emergency
+ * stop. It leaves a still beam wherever the laser does not obey, heeds neither jerk nor torque, and needs a running timer.
+ * Nothing here is a clearance; local rules and a competent person decide.
+ *
  * The layout of a table is described in docs/pack.md, the use of the player in docs/player.md.
  */
-#ifndef PHW_PLAYER
-#define PHW_PLAYER 1
+#ifdef PHW_PLAYER
+#if PHW_PLAYER != 2
+#error "tables with players of different versions in one program: let one version of phasewright write both"
+#endif
+#else
+/* The version of this player; a header with another one does not go into the same program. */
+#define PHW_PLAYER 2
 
 #include <stdbool.h>
 #include <stddef.h>
@@ -32,6 +41,11 @@
 #ifndef PHW_BLOCK
 #define PHW_BLOCK 1024u
 #endif
+/* No table has larger ones. */
+#define PHW_MOST_BLOCK 4096u
+#if PHW_BLOCK < 1024u || PHW_BLOCK > 4096u
+#error "PHW_BLOCK is at least 1024, since every table says that its blocks may have so many bytes, and at most 4096"
+#endif
 
 /* Functions that are never merged into their callers, so that the stack holds one of them at a time. */
 #if defined(__GNUC__)
@@ -40,12 +54,12 @@
 #define PHW_APART static inline
 #endif
 
-/* What a player is doing. */
+/* What a player is doing. A player that is all zero, since nobody has opened it, has nothing to play. */
 enum {
-    PHW_RUNNING = 0, /* playing */
-    PHW_ENDED = 1,   /* the table has come to its end */
-    PHW_STOPPED = 2, /* phw_stop was called; it may still be slowing down */
-    PHW_DAMAGED = 3  /* the table is not whole; it may still be slowing down */
+    PHW_DAMAGED = 0, /* the table is not whole, or not opened; it may still be slowing down */
+    PHW_RUNNING = 1, /* playing */
+    PHW_ENDED = 2,   /* the table has come to its end */
+    PHW_STOPPED = 3  /* phw_stop was called; it may still be slowing down */
 };
 
 /* The set-point of one tick. */
@@ -165,7 +179,8 @@ PHW_APART uint64_t phw_unsigned(phw_player *player) {
     uint8_t groups = 10;
     uint8_t byte;
     do {
-        if (groups-- == 0u) {
+        /* More than ten groups, or more than 64 bits. */
+        if (groups-- == 0u || value >> 57 != 0u) {
             player->broken = true;
             return 0;
         }
@@ -252,7 +267,8 @@ PHW_APART void phw_row(phw_player *player) {
         player->run_left = phw_unsigned32(player);
         player->beam = phw_byte(player);
         player->cue = phw_unsigned32(player);
-        if (player->run_left == 0u) {
+        /* No run of nothing, and none of more than the block has. */
+        if (player->run_left - 1u > player->block_left) {
             player->broken = true;
             return;
         }
@@ -287,6 +303,7 @@ PHW_APART bool phw_row_state(phw_player *player) {
  * first byte after it; false where it cannot be, or does not start at the tick that the player has come to. */
 PHW_APART bool phw_block_head(phw_player *player) {
     uint8_t flags = phw_at(player, player->block, 8);
+    uint64_t after;
     player->at = 9;
     player->broken = false;
     if (phw_u16(player, player->block, 4) != player->size || (flags & 0xFEu) != 0u) {
@@ -297,15 +314,16 @@ PHW_APART bool phw_block_head(phw_player *player) {
         return false;
     }
     player->block_left = phw_unsigned32(player);
+    if (((flags & 1u) != 0u) != (player->looped && player->tick == player->loop_tick)) {
+        return false;
+    }
     if ((flags & 1u) != 0u) {
         player->loop_offset = player->offset;
         player->loop_size = player->size;
-        if (!player->looped || player->tick != player->loop_tick) {
-            return false;
-        }
     }
-    /* The block does not run past the end. */
-    return !player->broken && (uint64_t)player->block_left < player->total - player->tick;
+    /* The block does not run past the end, and it is the last exactly where it comes to it. */
+    after = player->total - player->tick - 1u;
+    return !player->broken && player->block_left <= after && (player->next_size == 0u) == (player->block_left == after);
 }
 
 /* Whether the checksum of `size` bytes is right, `checked` of which (from byte 4 on) `crc` has already seen. */
@@ -329,9 +347,10 @@ static inline uint16_t phw_next(const phw_player *player, uint32_t *offset) {
     return player->looped ? player->loop_size : 0u;
 }
 
-/* Streaming: asks for the next block and checks a few bytes of it. */
+/* Streaming: asks for the next block and checks a few bytes of it; more where it came so late that a few would not do. */
 PHW_APART void phw_look_ahead(phw_player *player) {
     uint16_t until;
+    uint16_t few = PHW_CHECK;
     uint32_t offset = 0;
     uint16_t size = phw_next(player, &offset);
     if (size < PHW_LEAST_BLOCK || size > player->largest) {
@@ -343,7 +362,11 @@ PHW_APART void phw_look_ahead(phw_player *player) {
         player->crc = UINT32_MAX;
         return;
     }
-    until = (uint16_t)(player->checked + PHW_CHECK < size ? player->checked + PHW_CHECK : size);
+    until = (uint16_t)(size - player->checked);
+    if (player->block_left < until / PHW_CHECK) {
+        few = (uint16_t)(until / (uint16_t)(player->block_left + 1u) + 1u);
+    }
+    until = until > few ? (uint16_t)(player->checked + few) : size;
     for (; player->checked < until; player->checked++) {
         player->crc = phw_crc(player->crc, player->ahead[player->checked]);
     }
@@ -353,7 +376,8 @@ PHW_APART void phw_look_ahead(phw_player *player) {
 PHW_APART bool phw_enter(phw_player *player) {
     uint32_t offset = 0;
     uint16_t size = phw_next(player, &offset);
-    if (size < PHW_LEAST_BLOCK || size > player->largest) {
+    /* A block is used up exactly when its ticks are. */
+    if (size < PHW_LEAST_BLOCK || size > player->largest || (player->block != NULL && player->at != player->size)) {
         return false;
     }
     if (player->read != NULL) {
@@ -462,7 +486,14 @@ static inline int32_t phw_move(phw_rotor *rotor) {
     return step;
 }
 
-/* over / under, rounded down or up; under is below 2^63. Bit by bit: it is needed once, and takes no library. */
+/* over / under, rounded down, or up as ticks of slowing down are; under is below 2^63. Bit by bit: it is needed once, and takes
+ * no library.
+ *
+ * Up: `under` is the deceleration d in 2^-32 counts a tick squared, rounded down, so d < under + 1, and over = q * under + rest.
+ * over > q * d, so that q + 1 ticks are due, is sure where rest >= q, since q * d < q * under + q. A rest below q is what the
+ * rounding down leaves where over = q * d, and q ticks are due. It cannot be anything else where d is a fraction of counts
+ * with a denominator below 2^32 / q: over / q - d is then 0 or at least 1 / (denominator * q) counts > 2^-32 counts. With a
+ * larger denominator q ticks may be taken for q + 1; each rotor then loses less than 2^-32 counts a tick squared too much. */
 PHW_APART uint64_t phw_divide(uint64_t over, uint64_t under, bool up) {
     uint64_t rest = 0;
     uint8_t bit;
@@ -474,7 +505,7 @@ PHW_APART uint64_t phw_divide(uint64_t over, uint64_t under, bool up) {
             over |= 1u;
         }
     }
-    return up && rest != 0u ? over + 1u : over;
+    return up && rest != 0u && rest >= over ? over + 1u : over;
 }
 
 /* The size of a step in 2^-32 counts. */
@@ -619,13 +650,13 @@ static inline void phw_go_on(phw_player *player) {
         } else {
             phw_row(player);
         }
-        if (player->read != NULL) {
-            phw_look_ahead(player);
-        }
     } else if (player->tick == player->total && !player->looped) {
-        player->state = PHW_ENDED;
-        player->moving = false;
-        return;
+        if (player->at == player->size) {
+            player->state = PHW_ENDED;
+            player->moving = false;
+            return;
+        }
+        player->broken = true;
     } else if (!phw_enter(player) || !phw_block_state(player)) {
         player->broken = true;
     } else {
@@ -634,6 +665,8 @@ static inline void phw_go_on(phw_player *player) {
     }
     if (player->broken) {
         phw_fail(player);
+    } else if (player->read != NULL) {
+        phw_look_ahead(player);
     }
 }
 
@@ -658,7 +691,7 @@ static inline bool phw_tick(phw_player *player, phw_setpoint *point) {
     return moving;
 }
 
-/* PHW_RUNNING, PHW_ENDED, PHW_STOPPED or PHW_DAMAGED. */
+/* PHW_DAMAGED, PHW_RUNNING, PHW_ENDED or PHW_STOPPED. */
 static inline uint8_t phw_state(const phw_player *player) {
     return player->state;
 }
@@ -733,7 +766,7 @@ PHW_APART bool phw_head(phw_player *player, const uint8_t *from, uint16_t size) 
     /* The first block stands after the head. */
     player->offset = 0;
     player->size = size;
-    return player->total != 0u && (!player->looped || player->loop_tick < player->total);
+    return player->largest <= PHW_MOST_BLOCK && player->total != 0u && (!player->looped || player->loop_tick < player->total);
 }
 
 /* The size of the head that starts like this; 0 where it is no table of a version that this player knows. */
@@ -747,6 +780,9 @@ static inline uint16_t phw_head_size(const phw_player *player, const uint8_t *fr
 static inline bool phw_start(phw_player *player) {
     if (!phw_enter(player) || !phw_block_state(player)) {
         return false;
+    }
+    if (player->read != NULL) {
+        phw_look_ahead(player);
     }
     player->state = PHW_RUNNING;
     player->moving = true;
@@ -796,6 +832,7 @@ PHW_APART bool phw_check(phw_player *player, const uint8_t *bytes, size_t length
         return false;
     }
     player->tick = 0;
+    player->block = NULL;
     player->offset = 0;
     player->size = size;
     player->next_size = first;

@@ -36,6 +36,9 @@ pub fn identifier(file: &str) -> String {
 }
 
 /// Everything before the bytes of the table.
+///
+/// The include guard names the table's ID too: two files of one identifier but different tables do not compile together, where the
+/// second would otherwise silently be left out.
 #[must_use]
 pub fn header_start(plan: &Plan, name: &str) -> String {
     let title = commentable(plan.show.title.as_deref().unwrap_or("untitled"));
@@ -47,8 +50,8 @@ pub fn header_start(plan: &Plan, name: &str) -> String {
          *   phw_player player;\n \
          *   phw_open(&player, {name}_table, {name}_table_size)\n \
          */\n\
-         #ifndef PHW_TABLE_{name}_H\n\
-         #define PHW_TABLE_{name}_H\n\
+         #ifndef PHW_TABLE_{name}_{id}_H\n\
+         #define PHW_TABLE_{name}_{id}_H\n\
          \n\
          {PLAYER}\n\
          static const uint8_t {name}_table[] PHW_STORE = {{\n"
@@ -64,7 +67,7 @@ pub fn header_end(plan: &Plan, name: &str, bytes: u64) -> String {
          #define {name}_table_size {bytes}UL\n\
          #define {name}_id 0x{id}UL\n\
          \n\
-         #endif /* PHW_TABLE_{name}_H */\n"
+         #endif /* PHW_TABLE_{name}_{id}_H */\n"
     )
 }
 

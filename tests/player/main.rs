@@ -14,8 +14,10 @@ mod load;
 
 mod avr;
 mod chips;
+mod edges;
 mod host;
 mod python;
+mod sketches;
 mod stop;
 mod tables;
 mod tools;

@@ -46,7 +46,7 @@ fn a_stop_at_two_hundred_random_ticks_brings_both_to_rest_together() {
             .wrapping_add(1_442_695_040_888_963_407);
         let stop = 1 + (chance >> 33) as usize % (tables::loop_and_a_half(&plan) - 1);
         let (played, last) = play(&program, &table, "memory", 1_000_000, Some(stop));
-        assert_eq!(last, "state 2", "stopped at {stop}");
+        assert_eq!(last, "state stopped", "stopped at {stop}");
         let before = played[stop - 1];
         let braking = &played[stop..];
         let needed = (0..2)

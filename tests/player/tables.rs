@@ -53,6 +53,12 @@ pub(crate) fn ending() -> Plan {
     load::plan_of_texts(ENDING, RIG)
 }
 
+/// A show so short that as knots it is one block, which loops to itself.
+pub(crate) fn short() -> Plan {
+    let text = "rig \"x.rig\"\nrun-up 2 s\ncue deltoid hold 700 ms\nloop morph 1500 ms\n";
+    load::plan_of_texts(text, RIG)
+}
+
 /// An example show.
 pub(crate) fn example(name: &str) -> Plan {
     load::plan_of(&load::examples().join(format!("{name}.show")))

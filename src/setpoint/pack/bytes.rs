@@ -110,11 +110,14 @@ impl<'b> Cursor<'b> {
         self.array().map(u64::from_le_bytes)
     }
 
-    /// A number in groups of seven bits; `None` past ten groups or the end.
+    /// A number in groups of seven bits; `None` past ten groups, 64 bits or the end.
     pub(super) fn unsigned(&mut self) -> Option<u64> {
         let mut value = 0_u64;
         for _ in 0..10 {
             let byte = self.byte()?;
+            if value >> 57 != 0 {
+                return None;
+            }
             value = value << 7 | u64::from(byte & 0x7F);
             if byte & 0x80 == 0 {
                 return Some(value);
@@ -171,6 +174,11 @@ mod tests {
                 assert_eq!(Cursor::new(&out).signed(), Some(signed));
             }
         }
+        // 2⁶⁴ has ten groups too, and does not fit.
+        let mut above = [0x80; 10];
+        above[0] = 0x82;
+        above[9] = 0;
+        assert_eq!(Cursor::new(&above).unsigned(), None);
         assert_eq!(Cursor::new(&[0x80; 9]).unsigned(), None);
         assert_eq!(Cursor::new(&[0x80; 11]).unsigned(), None);
     }

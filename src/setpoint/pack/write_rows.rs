@@ -15,6 +15,10 @@ const NARROW: i64 = 7;
 /// Stands in half a byte for a change that follows as a number.
 const WIDE: u8 = 15;
 
+/// Two blocks are shared out anew only where they have fewer bytes than this together, so that each half fits for sure: half of
+/// them, one row of at most 21 bytes, and the head, state and run of a block of its own.
+const SHARED_BYTES: usize = 2 * (BLOCK_BYTES - 128);
+
 /// Writes every row of a plan.
 pub(super) fn write(
     plan: &Plan,
@@ -26,6 +30,7 @@ pub(super) fn write(
     let mut writer = Writer {
         loop_start: blocks.head().loop_start,
         blocks,
+        before: None,
         open: None,
     };
     let mut buffers = vec![Vec::new(); rayon::current_num_threads().clamp(1, 16)];
@@ -45,12 +50,14 @@ pub(super) fn write(
         first = (first + buffers.len() as u64 * BLOCK_ROWS).min(count);
         progress(first);
     }
-    writer.close()
+    writer.end()
 }
 
 struct Writer<'b, 'w> {
     blocks: &'b mut Blocks<'w>,
     loop_start: Option<u64>,
+    /// The block before the open one, which waits since the two may be shared out anew.
+    before: Option<Open>,
     open: Option<Open>,
 }
 
@@ -64,24 +71,47 @@ struct Open {
     rows: Vec<u8>,
     /// Steps of the row before.
     steps: [i64; 2],
+    /// Every row so far, as it came.
+    taken: Vec<Row>,
 }
 
 impl Writer<'_, '_> {
     fn row(&mut self, row: &Row) -> io::Result<()> {
         let cut = self.loop_start == Some(row.tick);
-        if cut || self.open.as_ref().is_some_and(|open| !open.has_room(row)) {
-            self.close()?;
+        if cut {
+            self.end()?;
+        }
+        if self.open.as_ref().is_some_and(|open| !open.has_room(row)) {
+            let full = self.open.take();
+            self.send_before()?;
+            self.before = full;
         }
         let open = self.open.get_or_insert_with(|| Open::at(row, cut));
         open.push(row);
         Ok(())
     }
 
-    fn close(&mut self) -> io::Result<()> {
-        match self.open.take() {
-            Some(mut open) => {
-                open.end_run();
-                self.blocks.push(&open.head, &open.body)
+    /// Nothing more comes before the loop starts, or at all. What is open may be a block of very few ticks, and a player that
+    /// streams would have no more than those to fetch and to check the block after it: the last two then share what they have.
+    fn end(&mut self) -> io::Result<()> {
+        if let (Some(before), Some(open)) = (&self.before, &self.open) {
+            let bytes = before.bytes() + open.bytes();
+            if open.head.ticks < before.head.ticks / 2 && bytes < SHARED_BYTES {
+                let (first, second) = Open::shared(before, open, bytes / 2);
+                self.before = first;
+                self.open = second;
+            }
+        }
+        self.send_before()?;
+        self.before = self.open.take();
+        self.send_before()
+    }
+
+    fn send_before(&mut self) -> io::Result<()> {
+        match self.before.take() {
+            Some(mut block) => {
+                block.end_run();
+                self.blocks.push(&block.head, &block.body)
             }
             None => Ok(()),
         }
@@ -107,7 +137,30 @@ impl Open {
             run: (0, row.beam, row.cue),
             rows: Vec::with_capacity(BLOCK_BYTES),
             steps: [a.step, b.step],
+            taken: Vec::with_capacity(BLOCK_BYTES),
         }
+    }
+
+    /// Two blocks with the rows of these two, the first of which is full as soon as it has so many bytes.
+    fn shared(before: &Self, open: &Self, bytes: usize) -> (Option<Self>, Option<Self>) {
+        let mut blocks: (Option<Self>, Option<Self>) = (None, None);
+        for row in before.taken.iter().chain(&open.taken) {
+            let (first, second) = &mut blocks;
+            let full = first.as_ref().is_some_and(|first| first.bytes() >= bytes);
+            let (slot, starts_loop) = if full {
+                (second, false)
+            } else {
+                (first, before.head.loop_start)
+            };
+            slot.get_or_insert_with(|| Self::at(row, starts_loop))
+                .push(row);
+        }
+        blocks
+    }
+
+    /// Bytes so far, the head left out.
+    fn bytes(&self) -> usize {
+        self.body.len() + run_bytes(self.run.0, self.run.2) + self.rows.len()
     }
 
     fn changes(&self, row: &Row) -> [i64; 2] {
@@ -159,6 +212,7 @@ impl Open {
             }
         }
         self.steps = [RotorId::A, RotorId::B].map(|id| row.rotors.of(id).step);
+        self.taken.push(*row);
         self.run.0 += 1;
         self.head.ticks += 1;
     }

@@ -35,6 +35,21 @@ static const uint8_t *give(void *context, uint32_t offset, uint16_t size) {
     return to;
 }
 
+static const char *state_name(const phw_player *player) {
+    switch (phw_state(player)) {
+    case PHW_RUNNING:
+        return "running";
+    case PHW_ENDED:
+        return "ended";
+    case PHW_STOPPED:
+        return "stopped";
+    case PHW_DAMAGED:
+        return "damaged";
+    default:
+        return "unknown";
+    }
+}
+
 int main(int count, char **words) {
     static source from;
     static phw_player player;
@@ -64,7 +79,7 @@ int main(int count, char **words) {
     from.late = 1;
     open = strcmp(words[2], "stream") == 0 ? phw_open_reader(&player, give, &from) : phw_open(&player, bytes, (size_t)length);
     if (!open) {
-        printf("closed %d\n", (int)phw_state(&player));
+        printf("closed %s\n", state_name(&player));
         free(bytes);
         return 1;
     }
@@ -80,7 +95,7 @@ int main(int count, char **words) {
             break;
         }
     }
-    printf("state %d\n", (int)phw_state(&player));
+    printf("state %s\n", state_name(&player));
     free(bytes);
     return 0;
 }
