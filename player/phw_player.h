@@ -177,17 +177,19 @@ static inline uint8_t phw_byte(phw_player *player) {
 PHW_APART uint64_t phw_unsigned(phw_player *player) {
     uint64_t value = 0;
     uint8_t groups = 10;
-    uint8_t byte;
-    do {
-        /* More than ten groups, or more than 64 bits. */
-        if (groups-- == 0u || value >> 57 != 0u) {
+    for (;;) {
+        uint8_t byte = phw_byte(player);
+        value |= byte & 0x7Fu;
+        if ((byte & 0x80u) == 0u) {
+            return value;
+        }
+        /* No more than ten groups, and no more than 64 bits. */
+        if (--groups == 0u || (uint8_t)(value >> 56) > 1u) {
             player->broken = true;
             return 0;
         }
-        byte = phw_byte(player);
-        value = (value << 7) | (byte & 0x7Fu);
-    } while ((byte & 0x80u) != 0u);
-    return value;
+        value <<= 7;
+    }
 }
 
 /* A signed number as two's complement: 0, 1, 2, 3 ... stand for 0, -1, 1, -2 ... */
@@ -218,12 +220,9 @@ static inline uint8_t phw_shift(phw_player *player) {
     return shift;
 }
 
-/* Brings the counts of a phase back into one turn. */
-PHW_APART void phw_wrap(phw_rotor *rotor) {
+/* Brings the counts of a phase that has left its turn back into it. */
+PHW_APART void phw_back(phw_rotor *rotor) {
     int32_t at = phw_whole(rotor->phase);
-    if (at >= 0 && (uint32_t)at < rotor->counts) {
-        return;
-    }
     if (at < 0) {
         at += (int32_t)rotor->counts;
     } else {
@@ -236,6 +235,13 @@ PHW_APART void phw_wrap(phw_rotor *rotor) {
         }
     }
     rotor->phase = ((uint64_t)(uint32_t)at << 32) | (uint32_t)rotor->phase;
+}
+
+/* Keeps the counts of a phase within one turn. A turn has at most 2^30 of them, so that this also finds what is below 0. */
+static inline void phw_wrap(phw_rotor *rotor) {
+    if ((uint32_t)phw_whole(rotor->phase) >= rotor->counts) {
+        phw_back(rotor);
+    }
 }
 
 /* Takes a rotor as the head of a block states it; whether it can be. */

@@ -149,7 +149,11 @@ fn what_the_host_plays_is_what_the_table_says() {
                     let ticks = tables::loop_and_a_half(&plan);
                     let (mut played, last) = play(&program, &table, how, ticks + 1, None);
                     let ends = plan.loop_start().is_none();
-                    assert_eq!(last, if ends { "state ended" } else { "state running" }, "{what}");
+                    assert_eq!(
+                        last,
+                        if ends { "state ended" } else { "state running" },
+                        "{what}"
+                    );
                     assert_eq!(played.len(), ticks + 1, "{what}");
                     let after = played.pop().unwrap();
                     if ends {

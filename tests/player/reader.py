@@ -24,6 +24,7 @@ class Bytes:
             byte = self.take("B")
             value = value << 7 | byte & 0x7F
             if byte < 0x80:
+                need(value >> 64 == 0, "a number of more than 64 bits")
                 return value
         raise ValueError("a number of more than ten bytes")
 

@@ -20,10 +20,11 @@ fn a_stop_at_two_hundred_random_ticks_brings_both_to_rest_together() {
     let plan = tables::looped();
     let tick = plan.tick().value();
     // Counts a tick² that each may lose.
-    let most = RotorId::BOTH.map(|id| {
+    let exact = RotorId::BOTH.map(|id| {
         let rotor = plan.rig.rotor(id);
-        to_f64(&(rotor.deceleration.value.value() * tick * tick * whole(i128::from(rotor.counts))))
+        rotor.deceleration.value.value() * tick * tick * whole(i128::from(rotor.counts))
     });
+    let most = exact.each_ref().map(to_f64);
     let table = folder.path().join("table.pack");
     let mut chance = 12345_u64;
     for run in 0..200 {
@@ -49,15 +50,13 @@ fn a_stop_at_two_hundred_random_ticks_brings_both_to_rest_together() {
         assert_eq!(last, "state stopped", "stopped at {stop}");
         let before = played[stop - 1];
         let braking = &played[stop..];
-        let needed = (0..2)
-            .map(|index| (before.steps[index].abs() as f64 / most[index] - 1e-6).ceil() as usize);
-        // One tick more where the division of 2⁻³² counts rounds down; then the one that says it is over.
+        // Exactly n of them; then the one that says it is over.
+        let needed = (0..2).map(|index| {
+            let step = whole(i128::from(before.steps[index].abs()));
+            (step / &exact[index]).ceil().to_integer()
+        });
         let ticks = needed.max().unwrap();
-        assert!(
-            (ticks..=ticks + 1).contains(&(braking.len() - 1)) || ticks == 0,
-            "stopped at {stop}: {} for {ticks}",
-            braking.len()
-        );
+        assert_eq!(ticks, (braking.len() - 1).into(), "stopped at {stop}: n");
         let n = (braking.len() - 1).max(1) as f64;
         let mut gone = [0_i64; 2];
         for (index, most) in most.iter().enumerate() {
