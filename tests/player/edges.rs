@@ -71,9 +71,12 @@ impl Parts {
     }
 }
 
+/// What is wrong with a table, and how it comes to be so.
+type Wrong = (&'static str, fn(&mut Parts));
+
 /// What may be wrong with a table whose checksums are right.
-fn wrongs(content: Content) -> Vec<(&'static str, fn(&mut Parts))> {
-    let mut all: Vec<(&'static str, fn(&mut Parts))> = vec![
+fn wrongs(content: Content) -> Vec<Wrong> {
+    let mut all: Vec<Wrong> = vec![
         ("a byte too many in the last block", |parts| {
             parts.blocks.last_mut().unwrap().push(0x77);
         }),
