@@ -30,9 +30,9 @@ impl<'p> TableAuditor<'p> {
             Output::JsonKnots(tolerance) => {
                 Kind::Knots(Box::new(KnotsAuditor::new(plan, id, *tolerance)))
             }
-            Output::Pack(content) => Kind::Pack(Box::new(PackAuditor::new(plan, *content))),
+            Output::Pack(content) => Kind::Pack(Box::new(PackAuditor::new(plan, id, *content))),
             Output::Header(content, name) => {
-                Kind::Header(Box::new(HeaderAuditor::new(plan, *content, name)))
+                Kind::Header(Box::new(HeaderAuditor::new(plan, id, *content, name)))
             }
         })
     }

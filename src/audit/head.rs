@@ -51,6 +51,8 @@ pub(super) struct Heads<'p> {
     leg: usize,
     /// The tolerance of knots; `None` for rows.
     knots: Option<u32>,
+    /// Whether the finding before ended in a comma; `None` before the first.
+    comma: Option<bool>,
 }
 
 impl<'p> Heads<'p> {
@@ -61,6 +63,7 @@ impl<'p> Heads<'p> {
             next: Next::Opening,
             leg: 0,
             knots: None,
+            comma: None,
         }
     }
 
@@ -88,17 +91,33 @@ impl<'p> Heads<'p> {
                 }
                 self.next = self.after("cues");
             }
-            Next::Findings if text != b"]," => {
-                let entry = text.strip_suffix(b",").unwrap_or(text);
-                if serde_json::from_slice::<Value>(entry).is_err() && !entry.is_empty() {
-                    report.add(problem("findings", "a JSON object".to_owned(), shown(text)));
-                }
-            }
-            Next::Findings => self.next = self.after("findings"),
+            Next::Findings => self.finding(text, report),
             Next::Key(index) => return self.key(index, text, report),
             Next::Closed => {}
         }
         false
+    }
+
+    /// A line of the findings: an object each, with a comma where another follows.
+    fn finding(&mut self, text: &[u8], report: &mut Report) {
+        let ends = text == b"],";
+        if self.comma.is_some_and(|comma| comma == ends) {
+            let wanted = if ends {
+                "no comma after the last one"
+            } else {
+                "a comma after each that another follows"
+            };
+            report.add(problem("findings", wanted.to_owned(), shown(text)));
+        }
+        if ends {
+            self.next = self.after("findings");
+            return;
+        }
+        self.comma = Some(text.ends_with(b","));
+        if !is_finding(text.strip_suffix(b",").unwrap_or(text)) {
+            let wanted = "a finding as one JSON object without blanks";
+            report.add(problem("findings", wanted.to_owned(), shown(text)));
+        }
     }
 
     /// Takes the line after the rows; whether it is the end of the document.
@@ -129,9 +148,13 @@ impl<'p> Heads<'p> {
             return false;
         }
         let wanted = self.wanted(name);
-        let found = value_of(name, text);
-        if found.is_none() || found != Some(wanted.clone()) {
-            report.add(problem(name, wanted.to_string(), shown(text)));
+        match value_of(name, text) {
+            Some(found) => differences(name, &wanted, &found, report),
+            None => report.add(problem(
+                name,
+                format!("`\"{name}\":{wanted},`"),
+                shown(text),
+            )),
         }
         false
     }
@@ -208,13 +231,13 @@ impl<'p> Heads<'p> {
         } else {
             text.strip_suffix(b",")
         };
-        let found = entry.and_then(|entry| serde_json::from_slice::<Value>(entry).ok());
-        if found.as_ref() != Some(&wanted) {
-            report.add(problem(
-                &format!("cues, cue {}", leg.cue),
-                wanted.to_string(),
-                shown(text),
-            ));
+        let name = format!("cues, cue {}", leg.cue);
+        match entry.and_then(plain) {
+            Some(found) => differences(&name, &wanted, &found, report),
+            None => {
+                let comma = if last { "" } else { "," };
+                report.add(problem(&name, format!("`{wanted}{comma}`"), shown(text)));
+            }
         }
     }
 
@@ -295,8 +318,63 @@ fn expect(column: &str, wanted: &str, found: &[u8], report: &mut Report) {
 /// The value of a line `"name":value,`.
 fn value_of(name: &str, text: &[u8]) -> Option<Value> {
     let start = format!("\"{name}\":");
-    let value = text.strip_prefix(start.as_bytes())?.strip_suffix(b",")?;
-    serde_json::from_slice(value).ok()
+    plain(text.strip_prefix(start.as_bytes())?.strip_suffix(b",")?)
+}
+
+/// A JSON value written without blanks, needless escapes and keys that stand twice: as long as it must be.
+fn plain(text: &[u8]) -> Option<Value> {
+    let value: Value = serde_json::from_slice(text).ok()?;
+    (value.to_string().len() == text.len()).then_some(value)
+}
+
+/// Whether a line is a finding as `--findings json` gives it: no keys but those, `code` and `message` always.
+fn is_finding(text: &[u8]) -> bool {
+    const KNOWN: [&str; 7] = [
+        "code", "severity", "message", "count", "place", "also", "help",
+    ];
+    let Some(Value::Object(found)) = plain(text) else {
+        return false;
+    };
+    let texts = |key: &str| found.get(key).is_some_and(Value::is_string);
+    texts("code") && texts("message") && found.keys().all(|key| KNOWN.contains(&key.as_str()))
+}
+
+/// Two values key by key.
+fn differences(name: &str, wanted: &Value, found: &Value, report: &mut Report) {
+    let (Value::Object(wants), Value::Object(finds)) = (wanted, found) else {
+        if wanted != found {
+            report.add(problem(name, brief(wanted), brief(found)));
+        }
+        return;
+    };
+    for (key, wanted) in wants {
+        match finds.get(key) {
+            Some(found) => differences(&format!("{name}.{key}"), wanted, found, report),
+            None => report.add(problem(
+                &format!("the keys of {name}"),
+                format!("`{key}`"),
+                "no such key".to_owned(),
+            )),
+        }
+    }
+    for key in finds.keys().filter(|key| !wants.contains_key(*key)) {
+        let path = format!("{name}.{key}");
+        report.add(problem(
+            &path,
+            "no such key".to_owned(),
+            shown(key.as_bytes()),
+        ));
+    }
+}
+
+/// A value as a message shows it: numbers and words bare, all else as JSON, cut where it is long.
+fn brief(value: &Value) -> String {
+    match value {
+        Value::Null => "null".to_owned(),
+        Value::Bool(_) | Value::Number(_) => value.to_string(),
+        Value::String(text) => shown(text.as_bytes()),
+        value => shown(value.to_string().as_bytes()),
+    }
 }
 
 /// An exact number as the head writes it: a decimal of at most twelve places, else a fraction.

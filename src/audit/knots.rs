@@ -1,9 +1,11 @@
 //! Knots as JSON: the head line by line, the lists of pieces run tick by tick against the plan.
 //!
-//! The lists are kept until both rotors' are there: never more than the file is long.
+//! The lists are kept as text until both rotors' are there: never more than the file is long, and no more ticks than the
+//! table has.
 
 use super::head::Heads;
 use super::points::PointChecker;
+use super::runner::{Entries, Runner, numbers};
 use super::{Problem, Report, shown};
 use crate::plan::Plan;
 use crate::rig::RotorId;
@@ -12,9 +14,14 @@ use crate::setpoint::pack::PackPoint;
 /// A line of the head may be as long as an input file, in JSON six times as long.
 const LONGEST_LINE: usize = 64 * 1024 * 1024;
 
-/// Ticks of a straight stretch that are looked at on each side of those that are not, and how long such a stretch is.
-const EDGE: u64 = 1 << 12;
-const LONG: u64 = 1 << 20;
+/// An entry of a list never comes near this.
+const LONGEST_ENTRY: usize = 200;
+
+/// Ticks of a piece, or of a stretch of one beam and cue, at most.
+const MOST_TICKS: u64 = 1 << 32;
+
+/// What a document that stops too soon goes on with.
+const END: &str = "the end of the file";
 
 /// The lists, in the order of the document.
 const LISTS: [&str; 3] = ["a", "b", "events"];
@@ -29,6 +36,17 @@ enum Part {
     Lost,
 }
 
+/// A list as far as it has come.
+#[derive(Default)]
+struct List {
+    /// Its entries that are good, one a line.
+    text: Vec<u8>,
+    /// Their ticks.
+    ticks: u64,
+    /// The last entry as it stood, whose comma depends on what comes next.
+    last: Vec<u8>,
+}
+
 /// Checks a document as its bytes come.
 pub(super) struct KnotsAuditor<'p> {
     plan: &'p Plan,
@@ -36,7 +54,7 @@ pub(super) struct KnotsAuditor<'p> {
     points: PointChecker<'p>,
     part: Part,
     line: Vec<u8>,
-    lists: [Vec<[i64; 4]>; 3],
+    lists: [List; 3],
     pub(super) report: Report,
 }
 
@@ -48,7 +66,7 @@ impl<'p> KnotsAuditor<'p> {
             points: PointChecker::new(plan, tolerance),
             part: Part::Head,
             line: Vec::new(),
-            lists: [const { Vec::new() }; 3],
+            lists: Default::default(),
             report: Report::default(),
         }
     }
@@ -59,11 +77,19 @@ impl<'p> KnotsAuditor<'p> {
                 return;
             }
             self.line.extend_from_slice(part);
-            if part.last() == Some(&b'\n') {
+            let longest = if self.part == Part::Head {
+                LONGEST_LINE
+            } else {
+                LONGEST_ENTRY
+            };
+            if self.line.len() > longest {
+                let line = std::mem::take(&mut self.line);
+                self.lose("a line that ends", shown(&line));
+            } else if part.last() == Some(&b'\n') {
                 let line = std::mem::take(&mut self.line);
                 self.take(&line);
-            } else if self.line.len() > LONGEST_LINE {
-                self.lose("a line that ends", &[]);
+                self.line = line;
+                self.line.clear();
             }
         }
     }
@@ -72,7 +98,11 @@ impl<'p> KnotsAuditor<'p> {
         match self.part {
             Part::Over if self.line.is_empty() => self.run(),
             Part::Lost => {}
-            _ => self.lose("the end of the document", &[]),
+            Part::Over => {
+                let rest = std::mem::take(&mut self.line);
+                self.lose("nothing after the end of the document", shown(&rest));
+            }
+            _ => self.lose("the rest of the document", END.to_owned()),
         }
         self.report
     }
@@ -91,85 +121,102 @@ impl<'p> KnotsAuditor<'p> {
                 if text == wanted.as_bytes() {
                     self.part = Part::Entries(list);
                 } else {
-                    self.lose(&format!("`{wanted}`"), text);
+                    self.lose(&format!("`{wanted}`"), shown(text));
                 }
             }
             Part::Entries(list) => self.entry(list, text),
-            Part::Over | Part::Lost => self.lose("nothing after the end of the document", text),
+            Part::Over | Part::Lost => {
+                self.lose("nothing after the end of the document", shown(text));
+            }
         }
     }
 
-    fn entry(&mut self, list: usize, text: &[u8]) {
-        let last = list + 1 == LISTS.len();
-        if text
-            == if last {
-                b"]}".as_slice()
+    /// A line of a list: its end, or an entry.
+    fn entry(&mut self, index: usize, text: &[u8]) {
+        let events = index + 1 == LISTS.len();
+        let end: &[u8] = if events { b"]}" } else { b"]," };
+        let total = self.plan.rows();
+        let name = LISTS.get(index).copied().unwrap_or_default();
+        let turn = match index {
+            0 => self.turn(RotorId::A),
+            _ => self.turn(RotorId::B),
+        };
+        let Some(list) = self.lists.get_mut(index) else {
+            return;
+        };
+        let comma = list.last.last() == Some(&b',');
+        if !list.last.is_empty() && comma == (text == end) {
+            let entry = list.last.strip_suffix(b",").unwrap_or(&list.last).to_vec();
+            let wanted = if comma {
+                format!("{} and no comma, as the last of `{name}`", shown(&entry))
             } else {
-                b"],".as_slice()
+                format!(
+                    "{} and a comma, as another follows in `{name}`",
+                    shown(&entry)
+                )
+            };
+            let found = shown(&list.last);
+            self.report.add(problem(&wanted, found));
+        }
+        let ticks = list.ticks;
+        if text == end {
+            if ticks != total {
+                return self.lose(&in_all(total, name), format!("{ticks}"));
             }
-        {
-            self.part = if last {
+            self.part = if events {
                 Part::Over
             } else {
-                Part::Opening(list + 1)
+                Part::Opening(index + 1)
             };
             return;
         }
-        let numbers: Option<Vec<i64>> =
-            serde_json::from_slice(text.strip_suffix(b",").unwrap_or(text)).ok();
-        let entry = match (numbers.as_deref(), last) {
-            // A piece that goes on is marked by a phase below zero, which no piece has.
-            (Some([ticks, change]), false) => Some([*ticks, -1, 0, *change]),
-            (Some([ticks, phase, speed, change]), false) if *phase >= 0 => {
-                Some([*ticks, *phase, *speed, *change])
+        list.last = text.to_vec();
+        let entry = text.strip_suffix(b",").unwrap_or(text);
+        let good = numbers(entry).filter(|(numbers, count)| fits(events, numbers, *count, turn));
+        match good {
+            Some(([more, ..], _)) if ticks + more.cast_unsigned() <= total => {
+                list.ticks += more.cast_unsigned();
+                list.text.extend_from_slice(entry);
+                list.text.push(b'\n');
             }
-            (Some([ticks, cue, beam @ 0..=255]), true) if *cue >= 0 => {
-                Some([*ticks, *cue, *beam, 0])
+            Some(_) => self.lose(&in_all(total, name), "more".to_owned()),
+            None => {
+                let what = if events {
+                    "`[ticks,cue,beam]`"
+                } else {
+                    "`[ticks,change]` or `[ticks,phase,speed,change]`, the phase within a turn,"
+                };
+                self.lose(&format!("{what} in `{name}`"), shown(text));
             }
-            _ => None,
-        };
-        match (
-            entry.filter(|[ticks, ..]| (1..=1 << 32).contains(ticks)),
-            self.lists.get_mut(list),
-        ) {
-            (Some(entry), Some(list)) => list.push(entry),
-            _ => self.lose("an entry of the list", text),
         }
+    }
+
+    /// A turn of a rotor in 2⁻³² counts.
+    fn turn(&self, id: RotorId) -> i64 {
+        i64::from(self.plan.rig.rotor(id).counts) << 32
     }
 
     /// Runs the lists from the first tick to the last.
     fn run(&mut self) {
         let total = self.plan.rows();
         let lists = std::mem::take(&mut self.lists);
-        for (name, list) in LISTS.into_iter().zip(&lists) {
-            let ticks: u64 = list.iter().map(|[ticks, ..]| ticks.cast_unsigned()).sum();
-            if ticks != total {
-                self.lose(
-                    &format!("{total} ticks in the list `{name}`"),
-                    ticks.to_string().as_bytes(),
-                );
-                return;
-            }
-        }
-        let [a, b, events] = &lists;
-        let turn = |id| i64::from(self.plan.rig.rotor(id).counts) << 32;
+        let [a, b, mut events] = lists.each_ref().map(|list| Entries(&list.text));
         let start = self.plan.loop_start().map_or(u64::MAX, |tick| tick.0);
         let mut runners = [
-            Runner::new(a, turn(RotorId::A), start),
-            Runner::new(b, turn(RotorId::B), start),
+            Runner::new(a, self.turn(RotorId::A), start),
+            Runner::new(b, self.turn(RotorId::B), start),
         ];
-        let (mut left, mut events) = (0, events.iter());
-        let (mut cue, mut beam) = (0, 0);
+        let (mut left, mut cue, mut beam) = (0, 0, 0);
         let mut tick = 0;
         while tick < total {
             if left == 0 {
-                let Some([ticks, next_cue, next_beam, _]) = events.next() else {
+                let Some(([ticks, next_cue, next_beam, _], _)) = events.next() else {
                     return;
                 };
-                (left, cue, beam) = (ticks.cast_unsigned(), *next_cue, *next_beam);
+                (left, cue, beam) = (ticks.cast_unsigned(), next_cue, next_beam);
             }
             let counts = runners.each_ref().map(Runner::counts);
-            let steps = runners.each_mut().map(|runner| runner.advance());
+            let steps = runners.each_mut().map(Runner::advance);
             left -= 1;
             let point = PackPoint {
                 tick,
@@ -179,127 +226,50 @@ impl<'p> KnotsAuditor<'p> {
                 beam: u8::try_from(beam).unwrap_or(u8::MAX),
             };
             self.points.check(&point, &mut self.report);
-            tick += 1;
-            let straight = runners
-                .iter()
-                .map(Runner::straight)
-                .min()
-                .unwrap_or(0)
-                .min(left.saturating_sub(1));
-            if straight > LONG + 2 * EDGE && point.tick.is_multiple_of(EDGE) {
-                let skipped = straight - EDGE;
+            let straight = runners.iter().map(Runner::straight).min().unwrap_or(0);
+            let skipped = self.points.skip(
+                tick,
+                straight.min(left.saturating_sub(1)),
+                runners.each_ref().map(Runner::line),
+                &mut self.report,
+            );
+            if skipped > 0 {
                 runners.iter_mut().for_each(|runner| runner.skip(skipped));
-                (tick, left) = (tick + skipped, left - skipped);
-                self.points.skipped();
-                self.report.rows += skipped;
             }
+            left -= skipped;
+            tick += 1 + skipped;
         }
         self.points.close(&mut self.report);
     }
 
-    fn lose(&mut self, wanted: &str, found: &[u8]) {
-        self.report.add(Problem {
-            tick: None,
-            column: "knots".to_owned(),
-            wanted: wanted.to_owned(),
-            found: shown(found),
-        });
+    fn lose(&mut self, wanted: &str, found: String) {
+        self.report.add(problem(wanted, found));
         self.part = Part::Lost;
     }
 }
 
-/// One rotor's list on its way; after its last piece comes the phase at the loop start.
-struct Runner<'l> {
-    pieces: std::slice::Iter<'l, [i64; 4]>,
-    turn: i64,
-    phase: i64,
-    speed: i64,
-    change: i64,
-    left: u64,
-    tick: u64,
-    loop_start: u64,
-    closing: i64,
+/// Whether the numbers of an entry can stand in its list.
+fn fits(events: bool, numbers: &[i64; 4], count: usize, turn: i64) -> bool {
+    let [ticks, second, third, _] = *numbers;
+    let ticks = (1..=MOST_TICKS.cast_signed()).contains(&ticks);
+    let rest = match (events, count) {
+        (false, 2) => true,
+        (false, 4) => (0..turn).contains(&second),
+        (true, 3) => (0..=i64::from(u32::MAX)).contains(&second) && (0..=255).contains(&third),
+        _ => false,
+    };
+    ticks && rest
 }
 
-impl<'l> Runner<'l> {
-    fn new(list: &'l [[i64; 4]], turn: i64, loop_start: u64) -> Self {
-        let mut runner = Self {
-            pieces: list.iter(),
-            turn,
-            phase: 1 << 31,
-            speed: 0,
-            change: 0,
-            left: 0,
-            tick: 0,
-            loop_start,
-            closing: -1,
-        };
-        runner.enter();
-        runner
-    }
+fn in_all(total: u64, name: &str) -> String {
+    format!("{total} ticks in the list `{name}`")
+}
 
-    fn enter(&mut self) {
-        match self.pieces.next() {
-            Some([ticks, phase, speed, change]) => {
-                self.left = ticks.cast_unsigned();
-                if *phase >= 0 {
-                    (self.phase, self.speed) = (*phase % self.turn, *speed);
-                } else {
-                    // The change of a piece that goes on counts from its first tick on.
-                    let more = change.wrapping_sub(self.change);
-                    self.speed = self.speed.wrapping_add(more);
-                }
-                self.change = *change;
-            }
-            None if self.closing >= 0 => self.phase = self.closing,
-            None => {}
-        }
-        if self.tick == self.loop_start {
-            self.closing = self.phase;
-        }
-    }
-
-    fn counts(&self) -> u32 {
-        u32::try_from(self.phase >> 32).unwrap_or_default()
-    }
-
-    fn advance(&mut self) -> i64 {
-        let before = self.phase >> 32;
-        self.phase = self.phase.wrapping_add(self.speed);
-        self.speed = self.speed.wrapping_add(self.change);
-        let mut step = (self.phase >> 32) - before;
-        self.phase = self.phase.rem_euclid(self.turn);
-        self.tick += 1;
-        self.left -= 1;
-        if self.left == 0 {
-            let expected = self.phase >> 32;
-            self.enter();
-            let turn = self.turn >> 32;
-            let gap = (self.phase >> 32) - expected;
-            step += if gap > turn / 2 {
-                gap - turn
-            } else if gap < -((turn - 1) / 2) {
-                gap + turn
-            } else {
-                gap
-            };
-        }
-        step
-    }
-
-    /// Ticks that can be skipped.
-    fn straight(&self) -> u64 {
-        if self.change == 0 {
-            self.left.saturating_sub(1)
-        } else {
-            0
-        }
-    }
-
-    fn skip(&mut self, ticks: u64) {
-        let moved = i128::from(self.phase) + i128::from(self.speed) * i128::from(ticks);
-        self.phase = i64::try_from(moved.rem_euclid(i128::from(self.turn))).unwrap_or_default();
-        self.left -= ticks;
-        self.tick += ticks;
+fn problem(wanted: &str, found: String) -> Problem {
+    Problem {
+        tick: None,
+        column: "knots".to_owned(),
+        wanted: wanted.to_owned(),
+        found,
     }
 }

@@ -1,18 +1,12 @@
 //! A pack as a stream of bytes: head and checksums by its reader, every set-point against the plan.
 
 use super::points::PointChecker;
-use super::{Problem, Report};
+use super::straight::Line;
+use super::{Problem, Report, pack_head};
 use crate::plan::Plan;
 use crate::setpoint::pack::{Content, MOST_BLOCK_BYTES, PackFault, PackHead, Reader};
 use std::collections::VecDeque;
 use std::io::{self, Read};
-
-/// Ticks of a straight stretch that are looked at on each side of those that are not.
-const EDGE: u64 = 1 << 12;
-
-/// Straight stretches longer than this are not looked at tick by tick: two straight lines that keep together on both
-/// sides of a stretch keep together within it.
-const LONG: u64 = 1 << 20;
 
 /// Bytes that have come and are not yet read.
 #[derive(Default)]
@@ -35,6 +29,7 @@ enum Part {
 /// Checks a pack as its bytes come.
 pub(super) struct PackAuditor<'p> {
     plan: &'p Plan,
+    id: String,
     content: Content,
     points: PointChecker<'p>,
     part: Part,
@@ -43,13 +38,14 @@ pub(super) struct PackAuditor<'p> {
 }
 
 impl<'p> PackAuditor<'p> {
-    pub(super) fn new(plan: &'p Plan, content: Content) -> Self {
+    pub(super) fn new(plan: &'p Plan, id: &str, content: Content) -> Self {
         let tolerance = match content {
             Content::Rows => 0,
             Content::Knots(tolerance) => tolerance,
         };
         Self {
             plan,
+            id: id.to_owned(),
             content,
             points: PointChecker::new(plan, tolerance),
             part: Part::Head(Vec::new()),
@@ -94,7 +90,13 @@ impl<'p> PackAuditor<'p> {
             let fed = Fed(std::mem::take(start).into());
             match Reader::new(fed) {
                 Ok(reader) => {
-                    self.head(reader.head());
+                    pack_head::check(
+                        self.plan,
+                        &self.id,
+                        self.content,
+                        reader.head(),
+                        &mut self.report,
+                    );
                     self.part = Part::Points(Box::new(reader));
                 }
                 Err(fault) => return self.lose(&fault),
@@ -109,48 +111,17 @@ impl<'p> PackAuditor<'p> {
                 Ok(Some(point)) => {
                     self.points.check(&point, &mut self.report);
                     let straight = reader.straight();
-                    if straight > LONG + 2 * EDGE && point.tick.is_multiple_of(EDGE) {
-                        reader.skip(straight - EDGE);
-                        self.points.skipped();
-                        self.report.rows += straight - EDGE;
-                    }
+                    let next = reader.lines().map(|[phase, speed]| Line { phase, speed });
+                    let skipped = self
+                        .points
+                        .skip(point.tick, straight, next, &mut self.report);
+                    reader.skip(skipped);
                 }
                 Ok(None) => {
                     self.whole = true;
                     self.part = Part::Over;
                 }
                 Err(fault) => self.lose(&fault),
-            }
-        }
-    }
-
-    /// What the head says against the plan.
-    fn head(&mut self, found: &PackHead) {
-        let wanted = PackHead::of(self.plan, self.content);
-        let fields = |head: &PackHead| {
-            [
-                ("form", format!("{:?} within {}", head.form, head.tolerance)),
-                ("table", format!("{:08x}", head.id)),
-                ("rows", head.ticks.to_string()),
-                ("loop", format!("{:?}", head.loop_start)),
-                ("tick_s", format!("{}/{}", head.tick.0, head.tick.1)),
-                ("latency_ticks", head.latency.to_string()),
-                ("rotor_a", format!("{:?}", head.rotors.a)),
-                ("rotor_b", format!("{:?}", head.rotors.b)),
-                ("show", head.show.clone()),
-                ("rig", head.rig.clone()),
-                ("largest block", head.largest.to_string()),
-                ("flags", head.optional.to_string()),
-            ]
-        };
-        for ((name, wanted), (_, found)) in fields(&wanted).into_iter().zip(fields(found)) {
-            if wanted != found {
-                self.report.add(Problem {
-                    tick: None,
-                    column: format!("head, {name}"),
-                    wanted,
-                    found,
-                });
             }
         }
     }

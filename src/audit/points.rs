@@ -1,12 +1,17 @@
 //! Set-points of a pack, or of knots, against the plan, tick by tick.
 
-use super::rows::{Expected, RowWanted};
+use super::expected::{Expected, RowWanted};
+use super::straight::{HoldLine, Line};
 use super::{Problem, Report};
 use crate::exact::{ratio, whole};
-use crate::plan::Plan;
+use crate::plan::{LegKind, Plan};
 use crate::rig::{Pair, RotorId};
 use crate::setpoint::pack::PackPoint;
 use num_traits::ToPrimitive;
+
+/// Ticks of a straight stretch that are looked at after those that are not, and how long such a stretch is.
+const EDGE: u64 = 1 << 12;
+const LONG: u64 = 1 << 20;
 
 /// Looks at one set-point after the other.
 pub(super) struct PointChecker<'p> {
@@ -19,8 +24,11 @@ pub(super) struct PointChecker<'p> {
     /// Where the step before leads, and where the loop starts.
     reached: Option<[i128; 2]>,
     looped: Option<[i128; 2]>,
-    /// First tick of the next leg.
-    leg: usize,
+    /// The leg of the last set-point, and its lines where it is a hold of knots.
+    leg: Option<usize>,
+    lines: Option<Pair<HoldLine>>,
+    /// Whether the last set-point was where it must be.
+    in_place: bool,
 }
 
 impl<'p> PointChecker<'p> {
@@ -44,14 +52,83 @@ impl<'p> PointChecker<'p> {
             }),
             reached: None,
             looped: None,
-            leg: 0,
+            leg: None,
+            lines: None,
+            in_place: true,
         }
     }
 
-    /// The ticks from here to `tick` are not looked at.
-    pub(super) fn skipped(&mut self) {
+    /// How many ticks after `tick`, the one checked last, need not be looked at one by one, of `straight` in which the table
+    /// runs along the lines `next`, given for the first of them: those of a hold in which these keep to the plan's own.
+    ///
+    /// Where they do not, the ticks are looked at until one is out of place; then that is said, and the rest left out.
+    pub(super) fn skip(
+        &mut self,
+        tick: u64,
+        straight: u64,
+        next: [Line; 2],
+        report: &mut Report,
+    ) -> u64 {
+        if straight <= LONG + 2 * EDGE || !tick.is_multiple_of(EDGE) {
+            return 0;
+        }
+        let (Some(lines), Some(leg)) = (
+            &self.lines,
+            self.leg.and_then(|index| self.plan.legs.get(index)),
+        ) else {
+            return 0;
+        };
+        let (first, quiet) = (tick + 1, self.expected.quiet_until(tick));
+        let ahead = straight.min(quiet.saturating_sub(first));
+        if ahead <= LONG + 2 * EDGE {
+            return 0;
+        }
+        let ticks = ahead - EDGE;
+        let from = first - leg.start.0;
+        let [a, b] = next;
+        let keeps = lines.a.keeps(from, ticks, a) && lines.b.keeps(from, ticks, b);
+        if !keeps {
+            if self.in_place {
+                return 0;
+            }
+            report.add(Problem {
+                tick: Some(first),
+                column: "knots".to_owned(),
+                wanted: "the line of the hold".to_owned(),
+                found: format!(
+                    "another one, as far as tick {}: not looked at one by one",
+                    first + ticks - 1
+                ),
+            });
+        }
         self.expected.jump();
         self.reached = None;
+        report.rows += ticks;
+        ticks
+    }
+
+    /// Takes the lines of the leg that the set-point asked for last is in.
+    fn enter(&mut self) {
+        let leg = self.expected.leg();
+        if self.leg == Some(leg) {
+            return;
+        }
+        self.leg = Some(leg);
+        let holds = |index: usize| {
+            self.plan
+                .legs
+                .get(index)
+                .is_some_and(|leg| leg.kind == LegKind::Hold)
+        };
+        self.lines = None;
+        if self.tolerance > 0 && holds(leg) {
+            self.lines = self.plan.moves(leg).map(|moves| {
+                Pair::each(|id| {
+                    let counts = self.plan.rig.rotor(id).counts;
+                    HoldLine::new(moves.of(id), self.plan.tick().value(), counts)
+                })
+            });
+        }
     }
 
     pub(super) fn check(&mut self, point: &PackPoint, report: &mut Report) {
@@ -65,10 +142,17 @@ impl<'p> PointChecker<'p> {
         };
         same("cue", wanted.cue.into(), point.cue.into());
         same("beam", wanted.beam.into(), point.beam.into());
-        let exact = self.starts_leg(tick);
+        self.enter();
+        let exact = self
+            .plan
+            .legs
+            .get(self.expected.leg())
+            .is_none_or(|leg| leg.start.0 == tick);
+        let before = report.count;
         for (index, id) in RotorId::BOTH.into_iter().enumerate() {
             self.rotor(index, id, point, &wanted, exact, report);
         }
+        self.in_place = report.count == before;
         let here = point.counts.map(i128::from);
         if let Some(led) = self.reached {
             self.joined(tick, led, here, report);
@@ -90,23 +174,6 @@ impl<'p> PointChecker<'p> {
         }
     }
 
-    fn starts_leg(&mut self, tick: u64) -> bool {
-        while self
-            .plan
-            .legs
-            .get(self.leg)
-            .is_some_and(|leg| leg.start.0 < tick)
-        {
-            self.leg += 1;
-        }
-        let last = self.plan.loop_leg.is_none() && tick == self.plan.total().0;
-        last || self
-            .plan
-            .legs
-            .get(self.leg)
-            .is_some_and(|leg| leg.start.0 == tick)
-    }
-
     fn rotor(
         &self,
         index: usize,
@@ -121,29 +188,23 @@ impl<'p> PointChecker<'p> {
         let found = i128::from(point.counts.get(index).copied().unwrap_or_default());
         let step = i128::from(point.steps.get(index).copied().unwrap_or_default());
         let (now, next) = (wanted.now.of(id).counts, *wanted.next.of(id));
-        let allowed = if exact { 0 } else { self.tolerance };
-        let near = |value: i128| {
-            let off = (found - value).rem_euclid(turn);
-            off.min(turn - off) <= allowed
-        };
+        let in_leg = self
+            .lines
+            .as_ref()
+            .map_or(self.tolerance, |lines| lines.of(id).allowed());
+        let allowed = if exact { 0 } else { in_leg };
         let name = id.name();
         let within = |value: i128| match allowed {
             0 => value.to_string(),
             allowed => format!("{value} within {allowed}"),
         };
-        if !near(now.value) && !now.other.is_some_and(near) {
+        if !now.near(found, allowed, turn) {
             let wanted = within(now.value.rem_euclid(turn));
             report.add(problem(tick, &format!("{name}_counts"), wanted, found));
         }
         let straight = next.value - now.value;
-        let off = (step - straight).abs();
         // Between two roundings that are both right, either may have been taken at each end.
-        let either = i128::from(now.other.is_some()) + i128::from(next.other.is_some());
-        let most_off = match self.tolerance {
-            0 => 0,
-            tolerance => 2 * tolerance + either,
-        };
-        if off > most_off && !now.leads_to(next, step) {
+        if !now.leads_to(next, step, 2 * in_leg) {
             report.add(problem(
                 tick,
                 &format!("{name}_step"),

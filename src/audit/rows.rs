@@ -1,14 +1,15 @@
 //! A stretch of rows against the plan, and its columns against one another.
 
+use super::expected::{Expected, RowWanted};
 use super::fields::decimal;
-use super::wanted::{RPM_UNITS, RotorWanted, TURN_UNITS, Track, Wanted, nearest};
+use super::wanted::{RPM_UNITS, TURN_UNITS, Wanted, nearest};
 use super::{Problem, Report, shown};
 use crate::exact::{Rational, ratio, scaled_decimal, whole};
-use crate::plan::{Leg, Plan};
+use crate::plan::Plan;
 use crate::rig::{Pair, RotorId};
 use crate::setpoint::{COLUMNS, Form};
 use num_bigint::BigInt;
-use num_traits::{ToPrimitive, Zero};
+use num_traits::ToPrimitive;
 
 /// Places of the columns in a row, in the order of [`COLUMNS`].
 const TICK: usize = 0;
@@ -64,6 +65,8 @@ pub(super) struct Stretch {
     pub(super) reached: Option<Pair<i128>>,
     /// Counts at the loop start, where it lies in the stretch.
     pub(super) looped: Option<Pair<i128>>,
+    /// Whether the document ends within it, before its last row.
+    pub(super) ended: bool,
 }
 
 impl<'p> Checker<'p> {
@@ -101,6 +104,10 @@ impl<'p> Checker<'p> {
         let mut stretch = Stretch::default();
         let mut expected = Expected::new(self.plan, self.latency, first);
         for (tick, line) in (first..).zip(lines.split_inclusive(|byte| *byte == b'\n')) {
+            if self.form == Form::Json && line == b"]}\n" {
+                stretch.ended = true;
+                break;
+            }
             stretch.report.rows += 1;
             let wanted = expected.next(tick, &mut stretch.report);
             let Some(row) = self.read(tick, line, &mut stretch.report) else {
@@ -178,8 +185,9 @@ impl<'p> Checker<'p> {
         let found = row.get(column).copied().unwrap_or_default();
         if !wanted.accepts(found) {
             let mut text = self.text(column, wanted.value);
-            if let Some(other) = wanted.other {
-                text = format!("{text} or {}", self.text(column, other));
+            if let Some((least, most)) = wanted.ends() {
+                let (least, most) = (self.text(column, least), self.text(column, most));
+                text = format!("{text} ({least} to {most} are near enough)");
             }
             report.add(self.problem(tick, column, &text, found));
         }
@@ -200,7 +208,7 @@ impl<'p> Checker<'p> {
             must_be(at.rpm, now.rpm);
             must_be(at.counts, now.counts.modulo(counts));
             let step = row.get(at.step).copied().unwrap_or_default();
-            if !now.counts.leads_to(*next, step) {
+            if !now.counts.leads_to(*next, step, 0) {
                 must_be(at.step, Wanted::exactly(next.value - now.counts.value));
             }
         }
@@ -263,156 +271,4 @@ impl<'p> Checker<'p> {
 /// The tick whose counts a loop must come back to; none for a run-down.
 fn stretch_start(plan: &Plan) -> u64 {
     plan.loop_start().map_or(u64::MAX, |tick| tick.0)
-}
-
-/// What a row must say.
-pub(super) struct RowWanted {
-    pub(super) cue: u32,
-    pub(super) beam: u8,
-    pub(super) now: Pair<RotorWanted>,
-    /// Unwrapped counts of the row after.
-    pub(super) next: Pair<Wanted>,
-}
-
-/// Walks along the plan, leg by leg.
-pub(super) struct Expected<'p> {
-    plan: &'p Plan,
-    latency: u64,
-    leg: usize,
-    tracks: Option<Pair<Track>>,
-    /// Worked out with the row before.
-    now: Option<Pair<RotorWanted>>,
-}
-
-impl<'p> Expected<'p> {
-    pub(super) fn new(plan: &'p Plan, latency: u64, first: u64) -> Self {
-        let begun = plan.legs.partition_point(|leg| leg.start.0 <= first);
-        Self {
-            plan,
-            latency,
-            leg: begun.saturating_sub(1),
-            tracks: None,
-            now: None,
-        }
-    }
-
-    /// The next row asked for need not be the one after the last.
-    pub(super) fn jump(&mut self) {
-        self.now = None;
-    }
-
-    pub(super) fn next(&mut self, tick: u64, report: &mut Report) -> RowWanted {
-        while let Some(leg) = self.plan.legs.get(self.leg) {
-            if tick < leg.start.0 + leg.ticks.0 {
-                return self.inside(tick, leg, report);
-            }
-            self.leg += 1;
-            self.tracks = None;
-            self.now = None;
-        }
-        self.at_the_end()
-    }
-
-    fn inside(&mut self, tick: u64, leg: &Leg, report: &mut Report) -> RowWanted {
-        let n = tick - leg.start.0;
-        let plan = self.plan;
-        if self.tracks.is_none() {
-            self.tracks = plan.moves(self.leg).map(|moves| {
-                Pair::each(|id| {
-                    let track = Track::new(moves.of(id), plan.tick(), plan.rig.rotor(id).counts);
-                    if let (0, Some(gap)) = (n, track.end_gap(moves.of(id))) {
-                        report.add(Problem {
-                            tick: Some(tick),
-                            column: format!("motion of rotor {}", id.name()),
-                            wanted: "a law that leads to the end of its leg".to_owned(),
-                            found: format!("one that ends {gap:e} turns beside it"),
-                        });
-                    }
-                    track
-                })
-            });
-        }
-        let now = match self.now.take() {
-            Some(now) => now,
-            None if n == 0 => self.exactly(self.leg),
-            None => self.at(n),
-        };
-        let next = if n + 1 == leg.ticks.0 {
-            self.exactly(self.leg + 1)
-        } else {
-            self.at(n + 1)
-        };
-        let row = RowWanted {
-            cue: leg.cue,
-            beam: self.beam(tick),
-            now,
-            next: Pair::each(|id| next.of(id).counts),
-        };
-        self.now = Some(next);
-        row
-    }
-
-    /// Both rotors n ticks into the present leg.
-    fn at(&self, n: u64) -> Pair<RotorWanted> {
-        let Some(tracks) = &self.tracks else {
-            return self.exactly(self.leg);
-        };
-        let mut known = None;
-        let a = tracks.a.at(n, &mut known);
-        if !tracks.a.same_law(&tracks.b) {
-            known = None;
-        }
-        let b = tracks.b.at(n, &mut known);
-        Pair { a, b }
-    }
-
-    /// Both rotors where leg `index` starts, or at the end of the show, by the plan's exact state.
-    fn exactly(&self, index: usize) -> Pair<RotorWanted> {
-        Pair::each(|id| {
-            let phase = self.plan.phase_before(index, id);
-            let speed = self.plan.speed_before(index, id);
-            let counts = self.plan.rig.rotor(id).counts;
-            RotorWanted::exact(phase.value(), speed.value(), counts)
-        })
-    }
-
-    /// The row after a run-down: at rest, dark, with nothing left to move.
-    fn at_the_end(&self) -> RowWanted {
-        let now = Pair::each(|id| {
-            let phase = self.plan.phase_before(self.plan.legs.len(), id);
-            let counts = self.plan.rig.rotor(id).counts;
-            RotorWanted::exact(phase.value(), &Rational::zero(), counts)
-        });
-        RowWanted {
-            cue: self.plan.legs.last().map_or(0, |leg| leg.cue),
-            beam: 0,
-            next: Pair::each(|id| now.of(id).counts),
-            now,
-        }
-    }
-
-    /// The level planned a latency later: within the loop if there is one, else dark past the end.
-    fn beam(&self, tick: u64) -> u8 {
-        let total = u128::from(self.plan.total().0);
-        let mut planned = u128::from(tick) + u128::from(self.latency);
-        if planned >= total {
-            let Some(start) = self.plan.loop_start() else {
-                return 0;
-            };
-            let start = u128::from(start.0);
-            planned = start + (planned - start) % (total - start).max(1);
-        }
-        // Near by in nearly every row: the leg that plays, or the next.
-        let holds = |leg: &&Leg| {
-            let start = u128::from(leg.start.0);
-            (start..start + u128::from(leg.ticks.0)).contains(&planned)
-        };
-        let near = self.plan.legs.iter().skip(self.leg).take(2).find(holds);
-        let far = || {
-            let legs = &self.plan.legs;
-            let begun = legs.partition_point(|leg| u128::from(leg.start.0) <= planned);
-            begun.checked_sub(1).and_then(|index| legs.get(index))
-        };
-        near.or_else(far).map_or(0, |leg| leg.beam)
-    }
 }

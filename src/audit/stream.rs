@@ -3,6 +3,7 @@
 use super::head::Heads;
 use super::rows::{Checker, Stretch};
 use super::{Problem, Report, shown};
+use crate::finding::render::counted;
 use crate::plan::Plan;
 use crate::rig::Pair;
 use crate::setpoint::{COLUMNS, Form};
@@ -41,6 +42,8 @@ pub struct Auditor<'p> {
     part: Part,
     pending: Vec<u8>,
     batch: usize,
+    /// Bytes at which those that are pending are looked at next.
+    due: usize,
     row: u64,
     reached: Option<Pair<i128>>,
     looped: Option<Pair<i128>>,
@@ -88,6 +91,7 @@ impl<'p> Auditor<'p> {
             part: Part::Head,
             pending: Vec::new(),
             batch: stretches * STRETCH,
+            due: stretches * STRETCH,
             row: 0,
             reached: None,
             looped: None,
@@ -105,13 +109,15 @@ impl<'p> Auditor<'p> {
     pub fn push(&mut self, bytes: &[u8]) {
         let mut bytes = bytes;
         while !bytes.is_empty() && self.part != Part::Lost {
-            // Never more than a batch is kept, unless a line of the head is longer.
-            let room = self.batch.saturating_sub(self.pending.len()).max(1);
+            // Never more than a batch is kept, unless a line of the head is longer: then twice as much is waited for, so that
+            // however long it is, its bytes are looked at a few times each.
+            let room = self.due.saturating_sub(self.pending.len()).max(1);
             let (now, later) = bytes.split_at(room.min(bytes.len()));
             self.pending.extend_from_slice(now);
             bytes = later;
-            if self.pending.len() >= self.batch {
+            if self.pending.len() >= self.due {
                 self.digest();
+                self.due = self.batch.max(2 * self.pending.len());
             }
         }
     }
@@ -132,15 +138,19 @@ impl<'p> Auditor<'p> {
             Form::Json => self.part == Part::Tail && self.heads.is_closed(),
         };
         if !complete {
-            self.report.add(Problem {
-                tick: None,
-                column: "end of the table".to_owned(),
-                wanted: format!("{} rows and the end of the document", self.count),
-                found: format!("{} rows", self.row),
-            });
+            self.ends_at(self.row);
         }
         self.close_loop();
         self.report
+    }
+
+    fn ends_at(&mut self, row: u64) {
+        self.report.add(Problem {
+            tick: None,
+            column: "end of the table".to_owned(),
+            wanted: format!("{} rows and the end of the document", self.count),
+            found: counted(usize::try_from(row).unwrap_or(usize::MAX), "row"),
+        });
     }
 
     /// The last step of a loop leads to where the loop starts.
@@ -188,8 +198,16 @@ impl<'p> Auditor<'p> {
             self.line(line);
         }
         self.pending = pending.get(used..).unwrap_or_default().to_vec();
-        if self.part == part && self.pending.len() > LONGEST_HEAD_LINE {
-            self.lose("a line of the head");
+        let longest = match (part, self.form) {
+            (Part::Head, Form::Json) => LONGEST_HEAD_LINE,
+            _ => LONGEST_ROW,
+        };
+        if self.part == part && self.pending.len() > longest {
+            self.lose(if part == Part::Head {
+                "a line of the head"
+            } else {
+                "end of the table"
+            });
         }
     }
 
@@ -229,7 +247,13 @@ impl<'p> Auditor<'p> {
             .map(|(first, lines)| checker.check(first, lines))
             .collect();
         for stretch in checked {
+            let ended = stretch.ended;
             self.join(stretch);
+            if ended {
+                self.ends_at(self.row);
+                self.part = Part::Lost;
+                return;
+            }
         }
         self.pending = pending.get(used..).unwrap_or_default().to_vec();
         if self.row < self.count && self.pending.len() > LONGEST_ROW {

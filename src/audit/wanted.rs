@@ -14,35 +14,62 @@ pub(super) const TURN_UNITS: i128 = 1_000_000_000_000;
 pub(super) const RPM_UNITS: i128 = 60_000_000;
 
 /// A value that a column must show: the correct rounding, and where the true value lies within a hair of a tie its other
-/// neighbour too.
+/// neighbour too; a leg so long that the hair is wider than the last decimal takes more of them.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub(super) struct Wanted {
     pub(super) value: i128,
-    pub(super) other: Option<i128>,
+    least: i128,
+    most: i128,
+    modulus: Option<i128>,
 }
 
 impl Wanted {
     pub(super) fn exactly(value: i128) -> Self {
-        Self { value, other: None }
+        Self {
+            value,
+            least: value,
+            most: value,
+            modulus: None,
+        }
     }
     pub(super) fn accepts(self, found: i128) -> bool {
-        found == self.value || Some(found) == self.other
+        match self.modulus {
+            None => (self.least..=self.most).contains(&found),
+            Some(modulus) => (0..modulus).contains(&found) && self.near(found, 0, modulus),
+        }
+    }
+    /// Whether `found` is within `allowed` of one of these values, modulo a whole number.
+    pub(super) fn near(self, found: i128, allowed: i128, modulus: i128) -> bool {
+        let above = (found - (self.least - allowed)).rem_euclid(modulus);
+        above <= self.most - self.least + 2 * allowed
     }
     /// The same modulo a whole number.
     pub(super) fn modulo(self, modulus: i128) -> Self {
         Self {
             value: self.value.rem_euclid(modulus),
-            other: self.other.map(|other| other.rem_euclid(modulus)),
+            modulus: Some(modulus),
+            ..self
         }
     }
-    /// Whether `step` leads from one of these values to one of `next`.
-    pub(super) fn leads_to(self, next: Self, step: i128) -> bool {
-        next.accepts(self.value + step) || self.other.is_some_and(|own| next.accepts(own + step))
+    /// Whether `step` leads from one of these values to within `allowed` of one of `next`, neither of them modulo anything.
+    pub(super) fn leads_to(self, next: Self, step: i128, allowed: i128) -> bool {
+        let (least, most) = (self.least + step, self.most + step);
+        least <= next.most + allowed && most + allowed >= next.least
+    }
+    /// The first and the last value, where there is more than one.
+    pub(super) fn ends(self) -> Option<(i128, i128)> {
+        let end = |value: i128| {
+            self.modulus
+                .map_or(value, |modulus| value.rem_euclid(modulus))
+        };
+        (self.least < self.most).then(|| (end(self.least), end(self.most)))
     }
     fn plus(self, more: i128) -> Self {
         Self {
             value: self.value + more,
-            other: self.other.map(|other| other + more),
+            least: self.least + more,
+            most: self.most + more,
+            ..self
         }
     }
 }
@@ -150,7 +177,7 @@ impl Track {
         let (phase, _) = morph.state(morph.ticks, &morph.law(morph.ticks));
         let gained = motion.end.value() - motion.start.value().floor();
         let gap = (phase - Double::from_rational(&gained)).leading().abs();
-        (gap > END_GAP).then_some(gap)
+        (gap > END_GAP.max(END_HAIRS * morph.hair)).then_some(gap)
     }
 
     /// Whether both follow one law, so that its value can be shared.
@@ -309,22 +336,17 @@ impl Morph {
         (phase, speed)
     }
 
-    /// `value`·scale rounded half up, and the other neighbour where it is within the hair of a tie.
+    /// `value`·scale rounded half up, and the other neighbours within the hair of it.
     fn rounded(&self, value: Double, scale: i128) -> Wanted {
         let size = scale as f64;
         let (nearest, over) = (value * size + Double::new(0.5)).floor();
         let hair = self.hair * size;
         let over = over.leading();
-        let other = if over < hair {
-            Some(nearest - 1)
-        } else if 1.0 - over < hair {
-            Some(nearest + 1)
-        } else {
-            None
-        };
         Wanted {
             value: nearest,
-            other,
+            least: nearest + (over - hair).floor() as i128,
+            most: nearest + (over + hair).floor() as i128,
+            modulus: None,
         }
     }
 }
@@ -336,5 +358,39 @@ const HAIR: f64 = 8.673_617_379_884_035e-19;
 /// 2⁻⁵⁰ turn: how far a morph may end beside its exact end.
 const END_GAP: f64 = 8.881_784_197_001_252e-16;
 
+/// The same in hairs, for a leg so long that rounding reaches as far.
+const END_HAIRS: f64 = 4.0;
+
 /// 2⁻⁹⁰ of the turns that a leg makes: some thousand times the rounding of double-double arithmetic.
 const RELATIVE_HAIR: f64 = 8.077_935_669_463_161e-28;
+
+#[cfg(test)]
+mod tests {
+    use super::Wanted;
+
+    #[test]
+    fn neighbours_are_taken_around_the_turn() {
+        let wanted = Wanted {
+            value: 0,
+            least: -1,
+            most: 0,
+            modulus: None,
+        };
+        assert!(wanted.accepts(-1) && wanted.accepts(0) && !wanted.accepts(1));
+        let around = wanted.modulo(400);
+        assert!(around.accepts(399) && around.accepts(0));
+        assert!(
+            !around.accepts(-1)
+                && !around.accepts(1)
+                && !around.accepts(398)
+                && !around.accepts(400)
+        );
+        assert_eq!(around.ends(), Some((399, 0)));
+        assert!(wanted.near(1, 1, 400) && wanted.near(398, 1, 400));
+        assert!(!wanted.near(2, 1, 400) && !wanted.near(397, 1, 400));
+        assert!(
+            wanted.leads_to(Wanted::exactly(7), 8, 0) && wanted.leads_to(Wanted::exactly(7), 7, 0)
+        );
+        assert!(!wanted.leads_to(Wanted::exactly(7), 9, 0));
+    }
+}

@@ -1,16 +1,16 @@
 //! `audit`: a second look at a table, or at a log of the machine.
 
 use super::deliver::temporary_beside;
+use super::known::{Kind, id_within, kind};
 use super::load::{Loader, is_standard_input};
 use super::progress::Progress;
 use super::report::{Target, report};
+use super::verdict::{Table, Verdict, broken_json};
 use super::{CLEAN, Common, ERRORS, Failure, Streams};
 use crate::audit::log::{self, LogReport};
-use crate::audit::{Report, audit_table};
+use crate::audit::{Problem, audit_table};
 use crate::finding::{FileId, Finding, Place, Sources};
 use crate::plan::Plan;
-use crate::setpoint::c_header;
-use crate::setpoint::pack::{Content, PackForm, PackHead};
 use crate::setpoint::{Form, Output, table_id};
 use clap::{Args, ValueEnum};
 use std::fs::{self, File, OpenOptions};
@@ -50,15 +50,6 @@ enum AuditForm {
     Json,
 }
 
-/// What a file is, as its first bytes tell.
-#[derive(Clone, Debug, PartialEq, Eq)]
-enum Kind {
-    Table(Output),
-    /// It starts like a table for controllers, and does not go on like one.
-    Broken(String),
-    Log,
-}
-
 impl Audit {
     pub(super) fn run(&self, common: &Common, streams: &mut Streams) -> Result<u8, Failure> {
         if let (Some(output), true) = (&self.output, self.show.is_none()) {
@@ -91,8 +82,14 @@ impl Audit {
         let mut file =
             BufReader::with_capacity(STRETCH, io::Cursor::new(start.clone()).chain(file));
         match kind(&start) {
-            Kind::Table(output) => self.table(&plan, &output, &mut file, common, streams),
-            Kind::Broken(what) => Err(Failure::Cannot(format!("{}: {what}", self.file.display()))),
+            Kind::Table(output) => {
+                let found = Table {
+                    output,
+                    carries: id_within(&start),
+                };
+                self.table(&plan, &found, &mut file, common, streams)
+            }
+            Kind::Broken(what) => self.broken(&plan, what, streams),
             Kind::Log => self.log(&plan, &mut file, log_file, &loader.sources, common, streams),
         }
     }
@@ -143,7 +140,7 @@ impl Audit {
     fn table(
         &self,
         plan: &Plan,
-        output: &Output,
+        table: &Table,
         file: &mut dyn Read,
         common: &Common,
         streams: &mut Streams,
@@ -155,16 +152,46 @@ impl Audit {
         let id = table_id(plan);
         let progress = Progress::new(plan.rows(), common, streams);
         progress.phase("checking");
-        let found = audit_table(plan, output, &id, file, &mut |rows| progress.rows(rows));
+        let found = audit_table(plan, &table.output, &id, file, &mut |rows| {
+            progress.rows(rows);
+        });
         progress.done();
         let found = found.map_err(|error| self.cannot(&error))?;
-        let name = self.file.display().to_string();
+        let verdict = Verdict {
+            name: self.file.display().to_string(),
+            show: self.show.as_deref().map(|show| show.display().to_string()),
+            id: &id,
+            table,
+            found: &found,
+        };
+        self.say(&verdict, streams)?;
+        Ok(if found.is_clean() { CLEAN } else { ERRORS })
+    }
+
+    fn say(&self, verdict: &Verdict<'_>, streams: &mut Streams) -> Result<(), Failure> {
         let text = match self.form {
-            AuditForm::Text => table_text(&name, &id, &found),
-            AuditForm::Json => table_json(&id, &found),
+            AuditForm::Text => verdict.text(),
+            AuditForm::Json => verdict.json(),
         };
         streams.stdout.write_all(text.as_bytes())?;
-        Ok(if found.is_clean() { CLEAN } else { ERRORS })
+        Ok(())
+    }
+
+    /// A file that starts like a table and cannot be one.
+    fn broken(&self, plan: &Plan, what: String, streams: &mut Streams) -> Result<u8, Failure> {
+        let name = self.file.display().to_string();
+        if self.form == AuditForm::Text {
+            return Err(Failure::Cannot(format!("{name}: {what}")));
+        }
+        let problem = Problem {
+            tick: None,
+            column: "form".to_owned(),
+            wanted: "a table".to_owned(),
+            found: what,
+        };
+        let value = broken_json(&table_id(plan), &problem);
+        streams.stdout.write_all(value.as_bytes())?;
+        Ok(ERRORS)
     }
 
     fn log(
@@ -217,132 +244,6 @@ fn fill(file: &mut dyn Read, most: usize) -> io::Result<Vec<u8>> {
     let mut start = Vec::new();
     file.take(most as u64).read_to_end(&mut start)?;
     Ok(start)
-}
-
-/// A table is known by its first line or sign; all else is taken for a log, whose reader says what is wrong with it.
-fn kind(start: &[u8]) -> Kind {
-    if start.starts_with(b"PHWT") {
-        return match pack_content(start) {
-            Ok(content) => Kind::Table(Output::Pack(content)),
-            Err(what) => Kind::Broken(what),
-        };
-    }
-    let text = start.strip_prefix(b"\xef\xbb\xbf").unwrap_or(start);
-    let text = text.trim_ascii_start();
-    if text.starts_with(b"/*") {
-        header(text)
-    } else if text.starts_with(b"{") {
-        match tolerance_within(text) {
-            Some(tolerance) => Kind::Table(Output::JsonKnots(tolerance)),
-            None => Kind::Table(Output::Rows(Form::Json)),
-        }
-    } else if text.starts_with(b"tick,") {
-        Kind::Table(Output::Rows(Form::Csv))
-    } else {
-        Kind::Log
-    }
-}
-
-/// What a pack that starts like this holds.
-fn pack_content(start: &[u8]) -> Result<Content, String> {
-    let head = PackHead::read(start).map_err(|fault| fault.to_string())?;
-    Ok(match head.form {
-        PackForm::Rows => Content::Rows,
-        PackForm::Knots => Content::Knots(u32::from(head.tolerance)),
-    })
-}
-
-/// A C header: the table's identifier, and what it holds, from the first lines of its table.
-fn header(text: &[u8]) -> Kind {
-    let text = String::from_utf8_lossy(text);
-    let table = text
-        .split_once("static const uint8_t ")
-        .and_then(|(_, rest)| {
-            let (name, rest) = rest.split_once("_table[] PHW_STORE = {")?;
-            let bytes = rest.split_once("};").map_or(rest, |(bytes, _)| bytes);
-            Some((name.to_owned(), c_header::elements(bytes)))
-        });
-    match table {
-        None => Kind::Broken("it starts like a C header, but has no table".to_owned()),
-        Some((name, start)) => match pack_content(&start) {
-            Ok(content) => Kind::Table(Output::Header(content, name)),
-            Err(what) => Kind::Broken(what),
-        },
-    }
-}
-
-/// The tolerance of knots, where a JSON table has them in place of rows.
-fn tolerance_within(start: &[u8]) -> Option<u32> {
-    let text = String::from_utf8_lossy(start);
-    let (_, after) = text.split_once("\n\"knots\":{\"tolerance\":")?;
-    let (number, _) = after.split_once(',')?;
-    number.parse().ok()
-}
-
-/// The ID in the start of a table: eight hexadecimal digits.
-fn id_within(start: &[u8]) -> Option<String> {
-    match kind(start) {
-        Kind::Table(Output::Pack(_)) => {
-            let head = PackHead::read(start).ok()?;
-            Some(format!("{:08x}", head.id))
-        }
-        Kind::Table(Output::Header(..)) => {
-            let text = String::from_utf8_lossy(start);
-            let (_, bytes) = text.split_once("_table[] PHW_STORE = {")?;
-            let head = PackHead::read(&c_header::elements(bytes)).ok()?;
-            Some(format!("{:08x}", head.id))
-        }
-        Kind::Table(Output::Rows(Form::Json) | Output::JsonKnots(_)) => {
-            let text = String::from_utf8_lossy(start);
-            let (_, after) = text.split_once("\"table\"")?;
-            let value = after.trim_start().strip_prefix(':')?.trim_start();
-            let (id, _) = value.strip_prefix('"')?.split_once('"')?;
-            let right = id.len() == 8 && id.bytes().all(|sign| sign.is_ascii_hexdigit());
-            right.then(|| id.to_owned())
-        }
-        _ => None,
-    }
-}
-
-fn table_text(name: &str, id: &str, found: &Report) -> String {
-    if found.is_clean() {
-        return format!("{name}: table {id}, {} rows, as planned\n", found.rows);
-    }
-    let mut text = String::new();
-    for problem in &found.problems {
-        text.push_str(&format!("{name}: {problem}\n"));
-    }
-    let more = found.count.saturating_sub(found.problems.len() as u64);
-    if more > 0 {
-        text.push_str(&format!("{name}: and {more} more\n"));
-    }
-    text.push_str(&format!(
-        "{name}: {} differences from table {id} in {} rows read: it must not be played\n",
-        found.count, found.rows
-    ));
-    text
-}
-
-fn table_json(id: &str, found: &Report) -> String {
-    let problems: Vec<serde_json::Value> = found
-        .problems
-        .iter()
-        .map(|problem| {
-            serde_json::json!({
-                "tick": problem.tick,
-                "column": problem.column,
-                "wanted": problem.wanted,
-                "found": problem.found,
-            })
-        })
-        .collect();
-    let value = serde_json::json!({
-        "table": id,
-        "rows": found.rows,
-        "differences": found.count,
-        "problems": problems,
-    });
-    format!("{value:#}\n")
 }
 
 /// Writes a small file: a regular one is replaced as a whole, a device or a pipe is written straight through.

@@ -148,7 +148,10 @@ pub(super) fn temporary_beside(target: &Path) -> io::Result<NamedTempFile> {
         // The process's mask is taken off this, as of every new file.
         builder.permissions(fs::Permissions::from_mode(0o666));
     }
-    builder.tempfile_in(folder)
+    // What is said is about the target: that the file beside it has a name of its own is nobody's business.
+    fs::metadata(&folder)?;
+    let made = builder.tempfile_in(folder);
+    made.map_err(|error| io::Error::from(error.kind()))
 }
 
 /// What to say where a table is not the one that was planned: a fault of this program or of the disk, never of the show.

@@ -12,12 +12,14 @@ mod compile;
 mod deliver;
 mod explain;
 mod folder;
+mod known;
 mod load;
 mod preview;
 mod progress;
 mod report;
 mod runsheet;
 mod validate;
+mod verdict;
 
 use crate::finding::render::Form as FindingsForm;
 use clap::error::ErrorKind;

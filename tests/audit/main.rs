@@ -9,6 +9,7 @@
 
 mod clean;
 mod corrupt;
+mod endless;
 #[path = "../setpoint/plans.rs"]
 mod plans;
 

@@ -7,6 +7,7 @@
 )]
 
 mod audit;
+mod audit_tables;
 mod builder;
 mod compile;
 mod controllers;

@@ -10,7 +10,7 @@ use phasewright::setpoint::knots::write_json_knots;
 use phasewright::setpoint::pack::Content;
 use phasewright::setpoint::{Head, Output, table_id};
 
-const RIG: &str = "\
+pub(crate) const RIG: &str = "\
 rotor a {
   top-speed     6000 rpm
   acceleration  60000 rpm/s
@@ -35,11 +35,11 @@ cue trifolium morph 500 ms hold 200 ms
 loop morph 400 ms
 ";
 
-fn plan() -> Plan {
+pub(crate) fn plan() -> Plan {
     load::plan_of_texts(SHOW, RIG)
 }
 
-fn audited(plan: &Plan, output: &Output, mut bytes: &[u8]) -> Report {
+pub(crate) fn audited(plan: &Plan, output: &Output, mut bytes: &[u8]) -> Report {
     audit_table(plan, output, &table_id(plan), &mut bytes, &mut |_| {}).unwrap()
 }
 

@@ -7,6 +7,8 @@
 )]
 
 mod audit;
+mod audit_json;
+mod audit_lines;
 #[path = "../common/mod.rs"]
 mod common;
 mod hostile;

@@ -109,6 +109,11 @@ impl<R: Read> Reader<R> {
         }
     }
 
+    /// Phase and speed of both rotors at the next tick, in 2⁻³² counts; phases within a turn.
+    pub fn lines(&self) -> [[i64; 2]; 2] {
+        self.motions.map(|motion| [motion.phase, motion.speed])
+    }
+
     /// Goes on by so many ticks without giving their set-points; at most [`Reader::straight`].
     pub fn skip(&mut self, ticks: u64) {
         let ticks = ticks.min(self.straight());
