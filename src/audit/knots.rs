@@ -9,7 +9,7 @@ use super::runner::{Entries, Runner, numbers};
 use super::{Problem, Report, shown};
 use crate::plan::Plan;
 use crate::rig::RotorId;
-use crate::setpoint::pack::PackPoint;
+use crate::setpoint::pack::{PackPoint, crc32};
 
 /// A line of the head may be as long as an input file, in JSON six times as long.
 const LONGEST_LINE: usize = 64 * 1024 * 1024;
@@ -32,6 +32,8 @@ enum Part {
     /// The line that opens a list, and its entries.
     Opening(usize),
     Entries(usize),
+    /// The line with the checksum of all before it.
+    Checksum,
     Over,
     Lost,
 }
@@ -54,6 +56,10 @@ pub(super) struct KnotsAuditor<'p> {
     points: PointChecker<'p>,
     part: Part,
     line: Vec<u8>,
+    /// CRC-32 of the lines so far.
+    crc: u32,
+    /// A checksum that is not that of the lines; what is wrong in them is said before.
+    checksum: Option<Problem>,
     lists: [List; 3],
     pub(super) report: Report,
 }
@@ -66,6 +72,8 @@ impl<'p> KnotsAuditor<'p> {
             points: PointChecker::new(plan, tolerance),
             part: Part::Head,
             line: Vec::new(),
+            crc: 0,
+            checksum: None,
             lists: Default::default(),
             report: Report::default(),
         }
@@ -96,7 +104,12 @@ impl<'p> KnotsAuditor<'p> {
 
     pub(super) fn finish(mut self) -> Report {
         match self.part {
-            Part::Over if self.line.is_empty() => self.run(),
+            Part::Over if self.line.is_empty() => {
+                self.run();
+                if let Some(problem) = self.checksum.take() {
+                    self.report.add(problem);
+                }
+            }
             Part::Lost => {}
             Part::Over => {
                 let rest = std::mem::take(&mut self.line);
@@ -125,16 +138,27 @@ impl<'p> KnotsAuditor<'p> {
                 }
             }
             Part::Entries(list) => self.entry(list, text),
+            Part::Checksum => self.checksum(text),
             Part::Over | Part::Lost => {
                 self.lose("nothing after the end of the document", shown(text));
             }
         }
+        self.crc = crc32(self.crc, line);
+    }
+
+    fn checksum(&mut self, text: &[u8]) {
+        let wanted = format!("\"crc32\":\"{:08x}\"}}", self.crc);
+        if text != wanted.as_bytes() {
+            let wanted = format!("`{wanted}`, the checksum of what stands before it");
+            self.checksum = Some(problem(&wanted, shown(text)));
+        }
+        self.part = Part::Over;
     }
 
     /// A line of a list: its end, or an entry.
     fn entry(&mut self, index: usize, text: &[u8]) {
         let events = index + 1 == LISTS.len();
-        let end: &[u8] = if events { b"]}" } else { b"]," };
+        let end: &[u8] = b"],";
         let total = self.plan.rows();
         let name = LISTS.get(index).copied().unwrap_or_default();
         let turn = match index {
@@ -164,7 +188,7 @@ impl<'p> KnotsAuditor<'p> {
                 return self.lose(&in_all(total, name), format!("{ticks}"));
             }
             self.part = if events {
-                Part::Over
+                Part::Checksum
             } else {
                 Part::Opening(index + 1)
             };

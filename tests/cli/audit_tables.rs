@@ -30,7 +30,10 @@ fn knots_say_within_how_many_counts_they_are() {
         &["ticks in knots, each within 1 count, as planned\n"],
         &[],
     );
-    let wider = one.replace("\"knots\":{\"tolerance\":1,", "\"knots\":{\"tolerance\":9,");
+    // A table that says it is less exact than it is, is not the one that was written.
+    let claimed = one.replace("\"knots\":{\"tolerance\":1,", "\"knots\":{\"tolerance\":9,");
+    audited(&[], "t.json", &claimed).says(1, &["crc32"], &[]);
+    let wider = text(&["--knots", "within", "9", "counts"], "t.json");
     audited(&[], "t.json", &wider).says(0, &["each within 9 counts, as planned\n"], &[]);
     let value = json_of(&audited(&["--form", "json"], "t.json", &wider));
     assert_eq!(value["tolerance"], 9);

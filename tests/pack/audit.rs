@@ -151,8 +151,8 @@ fn knots_as_json_are_run_through() {
         }
         before = sign;
     }
-    // A small change of a small number may stay within the tolerance.
-    assert!(missed.len() < 8, "{missed:?}");
+    // Where a small change of a small number stays within the tolerance, the checksum tells.
+    assert!(missed.is_empty(), "{missed:?}");
     for length in [0, 10, text.len() / 2, text.len() - 1] {
         assert!(
             !audited(&plan, &output, &text.as_bytes()[..length]).is_clean(),

@@ -1,13 +1,15 @@
 //! Knots as JSON: the head of every JSON table, then one line a piece.
 //!
 //! `[ticks, change]` goes on from the piece before (its change counts in its first speed already), `[ticks, phase, speed, change]` starts anew, all but the ticks in
-//! 2⁻³² counts, phases within one turn. `events` holds `[ticks, cue, beam]`.
+//! 2⁻³² counts, phases within one turn. `events` holds `[ticks, cue, beam]`. A last line holds the CRC-32 of all before
+//! it: another digit may leave every tick within the tolerance, and is another table all the same.
 
 use super::{Entry, FRACTION_BITS, LegPieces, Tolerance, each_leg};
 use crate::plan::Plan;
 use crate::rig::{Pair, RotorId};
 use crate::setpoint::events::events;
 use crate::setpoint::head::Head;
+use crate::setpoint::pack::crc32;
 use std::io::{self, Write};
 
 /// Writes the knots of a plan.
@@ -21,6 +23,8 @@ pub fn write_json_knots(
     out: &mut dyn Write,
     progress: &mut dyn FnMut(u64),
 ) -> io::Result<()> {
+    let mut summed = Summed { out, crc: 0 };
+    let out = &mut summed;
     head.write_knots(plan, tolerance, out)?;
     // Rotor b's list is kept until a's is written: a few dozen bytes a piece.
     let mut lists = Pair::each(|id| List {
@@ -48,9 +52,29 @@ pub fn write_json_knots(
         let comma = if index == 0 { "" } else { ",\n" };
         write!(out, "{comma}[{},{},{}]", event.ticks, event.cue, event.beam)?;
     }
-    out.write_all(b"\n]}\n")?;
+    out.write_all(b"\n],\n")?;
+    let crc = out.crc;
+    writeln!(out, "\"crc32\":\"{crc:08x}\"}}")?;
     progress(plan.rows());
     Ok(())
+}
+
+/// Hands on what it is given, and sums it.
+struct Summed<'w> {
+    out: &'w mut dyn Write,
+    crc: u32,
+}
+
+impl Write for Summed<'_> {
+    fn write(&mut self, bytes: &[u8]) -> io::Result<usize> {
+        let taken = self.out.write(bytes)?;
+        self.crc = crc32(self.crc, bytes.get(..taken).unwrap_or_default());
+        Ok(taken)
+    }
+
+    fn flush(&mut self) -> io::Result<()> {
+        self.out.flush()
+    }
 }
 
 /// The pieces of a rotor as text, and where they have run to.
