@@ -45,6 +45,46 @@ static int stopped_at_once(void) {
     return 0;
 }
 
+static phw_player streaming;
+
+/* Blocks lie in memory, but the later ones are given only where so few ticks of the one before are left. */
+static const uint8_t *give_late(void *context, uint32_t offset, uint16_t size) {
+    const uint32_t *left = (const uint32_t *)context;
+    if (offset > length || size > length - offset || (phw_state(&streaming) == PHW_RUNNING && streaming.block_left > *left)) {
+        return NULL;
+    }
+    return bytes + offset;
+}
+
+/* A block that comes late is checked in the ticks that are left, about as much in each, and none of it where it is due. */
+static int spread(void) {
+    static const uint32_t late[4] = {1000, 100, 20, 1};
+    unsigned which;
+    for (which = 0; which < 4u; which++) {
+        uint32_t left = late[which];
+        unsigned long tick;
+        unsigned blocks = 0;
+        NEED(phw_open_reader(&streaming, give_late, &left));
+        for (tick = 0; tick < 20000u; tick++) {
+            phw_setpoint point;
+            uint32_t before = streaming.block_left;
+            uint16_t checked = streaming.ahead == NULL ? 4u : streaming.checked;
+            NEED(phw_tick(&streaming, &point) && phw_state(&streaming) == PHW_RUNNING);
+            if (streaming.block_left + 1u == before && streaming.ahead != NULL) {
+                uint32_t most = streaming.largest / left + 2u;
+                NEED((uint32_t)(streaming.checked - checked) <= (most > PHW_CHECK ? most : PHW_CHECK));
+            }
+            if (streaming.block_left == 0u) {
+                uint32_t next;
+                NEED(streaming.ahead != NULL && streaming.checked == phw_next(&streaming, &next));
+                blocks++;
+            }
+        }
+        NEED(blocks > 2u);
+    }
+    return 0;
+}
+
 int main(int count, char **words) {
     FILE *file = count > 1 ? fopen(words[1], "rb") : NULL;
     if (file == NULL) {
@@ -52,5 +92,5 @@ int main(int count, char **words) {
     }
     length = fread(bytes, 1, sizeof bytes, file);
     fclose(file);
-    return unopened() != 0 || stopped_at_once() != 0;
+    return unopened() != 0 || stopped_at_once() != 0 || spread() != 0;
 }
