@@ -151,7 +151,7 @@ impl<'p> Heads<'p> {
         match value_of(name, text) {
             Some(found) => differences(name, &wanted, &found, report),
             None => report.add(problem(
-                name,
+                &format!("the line of {name}"),
                 format!("`\"{name}\":{wanted},`"),
                 shown(text),
             )),
