@@ -1,20 +1,12 @@
 //! Packs that are truncated, flipped, foreign or made to harm.
 
-use crate::load;
+use crate::audit::plan;
 use crate::rows::{pack_of, points_of};
 use phasewright::setpoint::pack::{Content, PackFault, Reader, crc32};
 
 /// A table of a few hundred rows, or its knots.
 fn small(content: Content) -> Vec<u8> {
-    let rig = "rotor a { top-speed 6000 rpm\n acceleration 60000 rpm/s\n counts 400\n index at 0 deg\n draws counter-clockwise }\n\
-               rotor b like a { draws clockwise\n index at 0 deg }\ncontroller { tick 5 ms }\n";
-    let rig = rig
-        .replace("{ top", "{\n top")
-        .replace("wise }", "wise\n}")
-        .replace("{ draws clockwise", "{\n draws clockwise")
-        .replace("0 deg }", "0 deg\n}");
-    let show = "rig \"x.rig\"\nrun-up 400 ms\ncue deltoid hold 300 ms\ncue trifolium morph 500 ms hold 200 ms\nloop morph 400 ms\n";
-    pack_of(&load::plan_of_texts(show, &rig), content)
+    pack_of(&plan(), content)
 }
 
 /// Reads until the end or the first fault.

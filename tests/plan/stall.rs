@@ -1,22 +1,8 @@
 //! What a finding of a motor that passes through its stall speed proposes.
 
+use super::RIG;
 use super::common::try_plan;
 use phasewright::finding::Code;
-
-const RIG: &str = "rotor a {
-  top-speed    12000 rpm
-  acceleration 6000 rpm/s
-  stall-speed  150 rpm
-  draws        counter-clockwise
-  counts       4096
-  index        at 0 deg
-}
-rotor b like a {
-  draws clockwise
-  index at 0 deg
-}
-controller { tick 2 ms }
-";
 
 fn help(dark: &str) -> String {
     let show = format!(
